@@ -1,0 +1,50 @@
+import { quasar, transformAssetUrls } from '@quasar/vite-plugin';
+import vue from '@vitejs/plugin-vue';
+import { defineConfig } from 'vitest/config';
+import { quasarVite } from './quasar.config.ts';
+
+const devServerPort = Number(process.env.PORT ?? 4600);
+const plugins = () => [vue({ template: { transformAssetUrls } }), quasar(quasarVite)];
+
+export default defineConfig(({ isSsrBuild }) => ({
+  plugins: plugins(),
+  server: { proxy: { '/api': `http://127.0.0.1:${devServerPort}` } },
+  build: isSsrBuild
+    ? {
+        target: 'node20',
+        sourcemap: true,
+        rollupOptions: {
+          input: { main: 'server/main.ts', 'estimate-worker': 'server/jobs/estimate-worker.ts' },
+        },
+      }
+    : { outDir: 'dist/client', target: 'es2022' },
+  test: {
+    reporters: ['default', './tests/support/plain-reporter.ts'],
+    maxWorkers: 2,
+    projects: [
+      { test: { name: 'unit', include: ['tests/unit/**/*.test.ts', 'tests/reference/**/*.test.ts', 'tests/*.test.ts'] } },
+      {
+        plugins: plugins(),
+        test: { name: 'client', environment: 'happy-dom', include: ['tests/client/**/*.test.ts'] },
+      },
+      {
+        test: {
+          name: 'api',
+          include: ['tests/api/**/*.test.ts'],
+          globalSetup: ['tests/support/template-database.ts'],
+          testTimeout: 30_000,
+          hookTimeout: 60_000,
+        },
+      },
+      {
+        test: {
+          name: 'e2e',
+          include: ['tests/e2e/**/*.test.ts'],
+          globalSetup: ['tests/support/template-database.ts', 'tests/support/built-client.ts'],
+          testTimeout: 120_000,
+          hookTimeout: 120_000,
+        },
+      },
+    ],
+  },
+}));
