@@ -1,0 +1,21 @@
+import { sql } from 'drizzle-orm';
+import type { Queryable } from '../../db/client.ts';
+import { addJob } from '../../jobs/queue.ts';
+import { markDirty } from '../estimates/work.ts';
+
+/** Readings of these tags changed between two instants: spans, roll-ups and estimates that rest on them follow. */
+export async function readingsChanged(
+  tx: Queryable,
+  change: { siteId: number; tagIds: number[]; from: Date; to: Date },
+): Promise<void> {
+  const { siteId, tagIds, from, to } = change;
+  const ids = sql`${sql.param(tagIds)}::int[]`;
+  await tx.execute(sql`
+    insert into dirty_hours (site_id, tag_id, hour)
+    select ${siteId}, tag_id, hour
+    from unnest(${ids}) tag_id,
+      generate_series(date_trunc('hour', ${from.toISOString()}::timestamptz), ${to.toISOString()}::timestamptz, interval '1 hour') hour
+    on conflict do nothing`);
+  await addJob(tx, 'roll-up', { siteId }, { key: `roll-up:${siteId}` });
+  await markDirty(tx, siteId, tagIds, from);
+}

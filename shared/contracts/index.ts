@@ -1,0 +1,30 @@
+import { audit } from './audit.ts';
+import { boards } from './board.ts';
+import type { EndpointSpec } from './endpoint.ts';
+import { history } from './history.ts';
+import { judging } from './judging.ts';
+import { mail } from './mail.ts';
+import { people } from './people.ts';
+import { register } from './register.ts';
+import { runs } from './runs.ts';
+import { samples } from './samples.ts';
+import { sites } from './sites.ts';
+import { tags } from './tags.ts';
+
+/** Every endpoint under /api/v1: routes, client, OpenAPI document and the access test all come from this table. */
+export const endpoints = {
+  ...people,
+  ...sites,
+  ...tags,
+  ...runs,
+  ...history,
+  ...samples,
+  ...register,
+  ...judging,
+  ...boards,
+  ...mail,
+  ...audit,
+} satisfies Record<string, EndpointSpec>;
+
+export type Endpoints = typeof endpoints;
+export type EndpointName = keyof Endpoints;

@@ -1,0 +1,95 @@
+import { randomUUID } from 'node:crypto';
+import type { Express } from 'express';
+import { runOnce } from 'graphile-worker';
+import pg from 'pg';
+import pino from 'pino';
+import request from 'supertest';
+import { afterAll, beforeAll, inject } from 'vitest';
+import { hashPassword } from '../../server/auth/password.ts';
+import { createApp } from '../../server/app.ts';
+import type { Context } from '../../server/context.ts';
+import { createDb, createPool } from '../../server/db/client.ts';
+import { persons, siteRoles } from '../../server/db/schema/index.ts';
+import { readConfig } from '../../server/env.ts';
+import { taskList } from '../../server/jobs/tasks.ts';
+import { quietLogger } from '../../server/jobs/quiet-logger.ts';
+import { type LocalMailServer, startLocalMailServer } from '../../server/mail/local-server.ts';
+import type { Role } from '../../shared/contracts/access.ts';
+import { databaseUrl } from './database-url.ts';
+
+export const password = 'a long enough password';
+let passwordHash: Promise<string> | undefined;
+
+/** A real server on a clone of the template database, with real mail; the clock can be set. */
+export interface TestServer {
+  app: Express;
+  context: Context;
+  now: { value: Date | null };
+  /** Runs every waiting job to its end. */
+  drainJobs(): Promise<void>;
+  /** Adds a person and returns an agent that is signed in as them. */
+  signedIn(who: { name?: string; administrator?: boolean; roles?: { siteId: number; role: Role }[] }): Promise<Agent>;
+}
+
+export type Agent = ReturnType<typeof request.agent> & { personId: number; email: string };
+
+export const origin = 'http://127.0.0.1:4600';
+
+/** Makes a test server for the calling file: one clone of the template database, dropped at the end. */
+export function useServer(): TestServer {
+  const name = `cupel_test_${randomUUID().replaceAll('-', '')}`;
+  const server = { now: { value: null } } as unknown as TestServer;
+  let admin: pg.Client;
+  let mail: LocalMailServer;
+
+  beforeAll(async () => {
+    admin = new pg.Client({ connectionString: databaseUrl('postgres') });
+    await admin.connect();
+    await admin.query(`create database ${name} template ${inject('templateDatabase')}`);
+    const log = pino({ level: process.env.LOG_LEVEL ?? 'silent' });
+    const config = readConfig({ DATABASE_URL: databaseUrl(name), NODE_ENV: 'test' });
+    const pool = createPool(config.databaseUrl, log, 6);
+    const clock = () => server.now.value ?? new Date();
+    const bare: Context = { config, pool, db: createDb(pool), log, clock };
+    mail = await startLocalMailServer(bare);
+    server.context = { ...bare, config: { ...config, smtpUrl: mail.url } };
+    server.app = createApp(server.context, { signInAttempts: 500 });
+  });
+  afterAll(async () => {
+    await mail?.stop();
+    await server.context?.pool.end();
+    await admin?.query(`drop database if exists ${name} with (force)`);
+    await admin?.end();
+  });
+
+  server.drainJobs = () =>
+    runOnce({
+      pgPool: server.context.pool,
+      taskList: taskList(server.context),
+      logger: quietLogger(server.context),
+      noHandleSignals: true,
+      noPreparedStatements: true,
+    });
+  server.signedIn = (who) => signIn(server, who);
+  return server;
+}
+
+let people = 0;
+
+async function signIn(server: TestServer, who: Parameters<TestServer['signedIn']>[0]): Promise<Agent> {
+  const { db } = server.context;
+  const email = `person${++people}@cupel.example`;
+  const [person] = await db
+    .insert(persons)
+    .values({
+      name: who.name ?? `Person ${people}`,
+      email,
+      administrator: who.administrator ?? false,
+      passwordHash: await (passwordHash ??= hashPassword(password)),
+    })
+    .returning();
+  if (who.roles?.length) await db.insert(siteRoles).values(who.roles.map((role) => ({ personId: person!.id, ...role })));
+  const agent = request.agent(server.app).set('Origin', origin) as Agent;
+  await agent.post('/api/v1/session').send({ email, password }).expect(200);
+  return Object.assign(agent, { personId: person!.id, email });
+}
