@@ -7,8 +7,11 @@ import { AppError, toProblem } from '../shared/contracts/errors.ts';
 import { createSessions } from './auth/sessions.ts';
 import type { Context } from './context.ts';
 import { auditRoutes } from './features/audit/routes.ts';
+import { boardRoutes } from './features/board/routes.ts';
+import { judgingRoutes } from './features/judging/routes.ts';
 import { mailRoutes } from './features/mail/routes.ts';
 import { peopleRoutes } from './features/people/routes.ts';
+import { registerRoutes } from './features/register/routes.ts';
 import { runRoutes } from './features/runs/routes.ts';
 import { siteRoutes } from './features/sites/routes.ts';
 import { tagRoutes } from './features/tags/routes.ts';
@@ -57,7 +60,17 @@ export function createApp(context: Context, options: AppOptions = {}): Express {
   return app;
 }
 
-const features = [peopleRoutes, siteRoutes, tagRoutes, runRoutes, mailRoutes, auditRoutes];
+const features = [
+  peopleRoutes,
+  siteRoutes,
+  tagRoutes,
+  runRoutes,
+  registerRoutes,
+  judgingRoutes,
+  boardRoutes,
+  mailRoutes,
+  auditRoutes,
+];
 
 function securityHeaders(context: Context) {
   const self = ["'self'"];
@@ -94,7 +107,10 @@ function slowDownGuessing(limit: number, skipSuccessfulRequests: boolean) {
     skipSuccessfulRequests,
     handler: (_request, response) => {
       const problem = toProblem(
-        new AppError('rate-limited', 'Too many attempts from this address. Wait a quarter of an hour and try again.'),
+        new AppError(
+          'rate-limited',
+          'Too many attempts from this address. Wait a quarter of an hour and try again.',
+        ),
         String(response.locals.requestId),
       );
       response.status(problem.status).type('application/problem+json').send(JSON.stringify(problem));
@@ -103,7 +119,10 @@ function slowDownGuessing(limit: number, skipSuccessfulRequests: boolean) {
 }
 
 function serveClient(app: Express, folder: string): void {
-  app.use('/assets', express.static(path.join(folder, 'assets'), { immutable: true, maxAge: '1y', fallthrough: false }));
+  app.use(
+    '/assets',
+    express.static(path.join(folder, 'assets'), { immutable: true, maxAge: '1y', fallthrough: false }),
+  );
   app.use(express.static(folder, { index: false }));
   app.get('/{*any}', (_request, response) => {
     response.setHeader('Cache-Control', 'no-cache');

@@ -1,6 +1,9 @@
 import { z } from 'zod';
 
-const truthy = z.enum(['1', '0', '']).default('').transform((value) => value === '1');
+const truthy = z
+  .enum(['1', '0', ''])
+  .default('')
+  .transform((value) => value === '1');
 
 const schema = z.object({
   NODE_ENV: z.string().default('production'),

@@ -7,6 +7,7 @@ import type { Context } from './context.ts';
 import { createDb, createPool } from './db/client.ts';
 import { migrate } from './db/migrate.ts';
 import { readConfig } from './env.ts';
+import { createComputePool } from './jobs/compute-pool.ts';
 import { startWorkers } from './jobs/worker.ts';
 import { startLocalMailServer } from './mail/local-server.ts';
 import { welcome } from './welcome.ts';
@@ -18,9 +19,12 @@ async function main(): Promise<void> {
   const log = pino({ level: config.logLevel });
   await migrate(config.databaseDirectUrl);
   const pool = createPool(config.databaseUrl, log);
-  const context: Context = { config, pool, db: createDb(pool), log, clock: () => new Date() };
+  const compute = createComputePool(config);
+  const context: Context = { config, pool, db: createDb(pool), log, compute, clock: () => new Date() };
   const localMail = config.smtpUrl ? undefined : await startLocalMailServer(context);
-  const withMail: Context = localMail ? { ...context, config: { ...config, smtpUrl: localMail.url } } : context;
+  const withMail: Context = localMail
+    ? { ...context, config: { ...config, smtpUrl: localMail.url } }
+    : context;
   const greeting = await welcome(withMail);
   const server = createServer(createApp(withMail, { clientFolder: path.resolve('dist/client') }));
   server.listen(config.port, config.host);
@@ -33,6 +37,7 @@ async function main(): Promise<void> {
     server.close();
     server.closeAllConnections();
     await workers.stop();
+    await compute.stop();
     await localMail?.stop();
     await pool.end();
     process.exit(0);
@@ -46,7 +51,9 @@ async function listening(server: ReturnType<typeof createServer>, port: number):
   });
   await Promise.race([once(server, 'listening'), failed]).catch((error: NodeJS.ErrnoException) => {
     if (error.code === 'EADDRINUSE') {
-      throw new Error(`Port ${port} is in use by another program. Stop it, or choose another: PORT=4700 npm start`);
+      throw new Error(
+        `Port ${port} is in use by another program. Stop it, or choose another: PORT=4700 npm start`,
+      );
     }
     throw error;
   });

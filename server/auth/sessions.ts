@@ -56,9 +56,12 @@ export const sessionCookie = 'cupel_session';
 
 /** Sessions of 14 days, extended while used. */
 export function createSessions(db: Db, secure: boolean) {
-  return new Lucia(new HashingAdapter(new DrizzlePostgreSQLAdapter(db as never, sessions, persons as never)), {
-    sessionExpiresIn: new TimeSpan(14, 'd'),
-    sessionCookie: { name: sessionCookie, attributes: { secure, sameSite: 'lax' } },
-  });
+  return new Lucia(
+    new HashingAdapter(new DrizzlePostgreSQLAdapter(db as never, sessions, persons as never)),
+    {
+      sessionExpiresIn: new TimeSpan(14, 'd'),
+      sessionCookie: { name: sessionCookie, attributes: { secure, sameSite: 'lax' } },
+    },
+  );
 }
 export type Sessions = ReturnType<typeof createSessions>;

@@ -13,14 +13,19 @@ export function createPool(url: string, log: Logger, max = 10): pg.Pool {
   const pool = new pg.Pool({ connectionString: url, max, application_name: 'cupel' });
   // Without these two a connection that the server closes would end the process.
   pool.on('error', (error) => log.warn({ error }, 'an idle database connection was lost'));
-  pool.on('connect', (client) => client.on('error', (error) => log.warn({ error }, 'a database connection was lost')));
+  pool.on('connect', (client) =>
+    client.on('error', (error) => log.warn({ error }, 'a database connection was lost')),
+  );
   return pool;
 }
 
 export const createDb = (pool: pg.Pool): Db => drizzle(pool, { schema });
 
 /** A transaction whose own client is at hand, for COPY. */
-export async function withClient<T>(pool: pg.Pool, work: (db: Db, client: pg.PoolClient) => Promise<T>): Promise<T> {
+export async function withClient<T>(
+  pool: pg.Pool,
+  work: (db: Db, client: pg.PoolClient) => Promise<T>,
+): Promise<T> {
   const client = await pool.connect();
   try {
     return await work(drizzle(client, { schema }) as unknown as Db, client);

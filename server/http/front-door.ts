@@ -1,4 +1,10 @@
-import express, { type NextFunction, type Request, type RequestHandler, type Response, Router } from 'express';
+import express, {
+  type NextFunction,
+  type Request,
+  type RequestHandler,
+  type Response,
+  Router,
+} from 'express';
 import type { z } from 'zod';
 import type { Access } from '../../shared/contracts/access.ts';
 import type { EndpointSpec, Received, Reply } from '../../shared/contracts/endpoint.ts';
@@ -36,7 +42,9 @@ export interface Download {
   content: string;
 }
 
-type Answer<E extends EndpointSpec> = E['kind'] extends 'download' ? Download : z.input<E['reply']> | Reply<E>;
+type Answer<E extends EndpointSpec> = E['kind'] extends 'download'
+  ? Download
+  : z.input<E['reply']> | Reply<E>;
 export type Handlers<T extends Record<string, EndpointSpec>> = {
   [K in keyof T]: (call: Call<T[K]>) => Promise<Answer<T[K]>>;
 };
@@ -53,13 +61,20 @@ export function routesOf<T extends Record<string, EndpointSpec>>(
   for (const name of Object.keys(table) as (keyof T)[]) {
     const spec = table[name]!;
     const register = { GET: 'get', POST: 'post', PUT: 'put', DELETE: 'delete' } as const;
-    router[register[spec.method]](spec.path, door(context, spec, handlers[name] as (call: never) => Promise<unknown>));
+    router[register[spec.method]](
+      spec.path,
+      door(context, spec, handlers[name] as (call: never) => Promise<unknown>),
+    );
   }
   return router;
 }
 
 /** Order at the door: session (before), row, permission, upload, then body; a foreign site is not found. */
-function door(context: Context, spec: EndpointSpec, handler: (call: never) => Promise<unknown>): RequestHandler {
+function door(
+  context: Context,
+  spec: EndpointSpec,
+  handler: (call: never) => Promise<unknown>,
+): RequestHandler {
   return async (request: Request, response: Response, next: NextFunction) => {
     const actor = (response.locals.actor ?? null) as Actor | null;
     const origin: Origin = { requestId: String(response.locals.requestId), fromAddress: request.ip ?? '' };
@@ -68,7 +83,11 @@ function door(context: Context, spec: EndpointSpec, handler: (call: never) => Pr
     const query = parsePart(spec.query, request.query);
     let upload: StoredUpload | undefined;
     if (spec.kind === 'upload') {
-      upload = await receiveUpload(context, request, response, { siteId: siteId!, personId: actor!.id, maxBytes: spec.maxBytes! });
+      upload = await receiveUpload(context, request, response, {
+        siteId: siteId!,
+        personId: actor!.id,
+        maxBytes: spec.maxBytes!,
+      });
     } else if (spec.body) {
       await new Promise<void>((resolve, reject) =>
         jsonBody(request, response, (error?: unknown) => (error ? reject(error as Error) : resolve())),
@@ -81,7 +100,10 @@ function door(context: Context, spec: EndpointSpec, handler: (call: never) => Pr
       body: parsePart(spec.body, request.body ?? {}),
       actor,
       row,
-      siteIds: actor && typeof spec.access === 'object' && spec.access.on === 'sites' ? sitesWhere(actor, spec.access.may) : undefined,
+      siteIds:
+        actor && typeof spec.access === 'object' && spec.access.on === 'sites'
+          ? sitesWhere(actor, spec.access.may)
+          : undefined,
       upload,
       origin,
       request,
@@ -117,7 +139,10 @@ async function admit(
 }
 
 const forbidden = () =>
-  new AppError('forbidden', 'Your role at this site doesn’t allow this. An administrator gives roles under People.');
+  new AppError(
+    'forbidden',
+    'Your role at this site doesn’t allow this. An administrator gives roles under People.',
+  );
 
 function sendDownload(response: Response, file: Download): void {
   response.type(file.contentType);

@@ -24,7 +24,10 @@ export function openApiDocument(publicUrl: string) {
       security: spec.access === 'public' ? [] : [{ [cookie.name]: [] }],
       request: requestOf(spec),
       responses: {
-        200: { description: 'Done', content: { [replyType(spec)]: { schema: spec.reply, example: spec.example } } },
+        200: {
+          description: 'Done',
+          content: { [replyType(spec)]: { schema: spec.reply, example: spec.example } },
+        },
         default: {
           description: 'Problem details (RFC 9457)',
           content: { 'application/problem+json': { schema: problem } },

@@ -6,7 +6,9 @@ export function parsePart(schema: z.ZodType | undefined, given: unknown): unknow
   if (!schema) return undefined;
   const parsed = schema.safeParse(given);
   if (parsed.success) return parsed.data;
-  throw invalidInput(parsed.error.issues.map((issue) => ({ path: issue.path.join('.'), message: sentence(issue) })));
+  throw invalidInput(
+    parsed.error.issues.map((issue) => ({ path: issue.path.join('.'), message: sentence(issue) })),
+  );
 }
 
 export function invalidInput(fields: FieldProblem[]): AppError {
@@ -19,7 +21,9 @@ export function invalidInput(fields: FieldProblem[]): AppError {
 /** zod's own wording is for programmers; ours, where a schema gave one, is kept. */
 function sentence(issue: z.core.$ZodIssue): string {
   if (issue.code === 'invalid_type') {
-    return /received (undefined|null)/.test(issue.message) ? 'This is missing.' : `This should be ${wanted(issue.expected)}.`;
+    return /received (undefined|null)/.test(issue.message)
+      ? 'This is missing.'
+      : `This should be ${wanted(issue.expected)}.`;
   }
   if (issue.code === 'unrecognized_keys') return `Nothing is known by the name ${issue.keys.join(', ')}.`;
   if (issue.code === 'invalid_union') return 'This fits none of the forms it may have.';
@@ -27,5 +31,10 @@ function sentence(issue: z.core.$ZodIssue): string {
 }
 
 const wanted = (expected: string) =>
-  ({ number: 'a number', string: 'a text', boolean: 'yes or no', array: 'a list', object: 'a group of fields' })[expected] ??
-  expected;
+  ({
+    number: 'a number',
+    string: 'a text',
+    boolean: 'yes or no',
+    array: 'a list',
+    object: 'a group of fields',
+  })[expected] ?? expected;

@@ -41,7 +41,8 @@ function asAppError(error: unknown): AppError {
 }
 
 function uploadError(error: multer.MulterError): AppError {
-  if (error.code === 'LIMIT_FILE_SIZE') return new AppError('too-large', 'The file is larger than is accepted here.');
+  if (error.code === 'LIMIT_FILE_SIZE')
+    return new AppError('too-large', 'The file is larger than is accepted here.');
   return new AppError('invalid-input', 'Send one file, in the field “file”.', {
     fields: [{ path: 'file', message: 'Send one file here.' }],
   });
@@ -50,8 +51,10 @@ function uploadError(error: multer.MulterError): AppError {
 /** Constraints that two requests at once can meet although each was checked before. */
 function databaseError(error: DrizzleQueryError): AppError | null {
   const cause = error.cause as { code?: string; constraint?: string } | undefined;
-  if (cause?.code === '23505') return new AppError('conflict', 'Something with this name exists already. Choose another name.');
-  if (cause?.code === '40001' || cause?.code === '40P01') {
+  if (cause?.code === '23505' && /_(name|email)_key$/.test(cause.constraint ?? '')) {
+    return new AppError('conflict', 'Something with this name exists already. Choose another name.');
+  }
+  if (cause?.code === '23505' || cause?.code === '40001' || cause?.code === '40P01') {
     return new AppError('conflict', 'Somebody else changed this at the same moment. Try again.');
   }
   return null;

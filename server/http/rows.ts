@@ -64,7 +64,8 @@ export async function lockRow<T extends RowTarget>(
 ): Promise<Permitted<RowOf<T>>> {
   const table = tables[target] as unknown as PgTable & { id: PgColumn; siteId: PgColumn };
   const own = eq(table.id, row.id);
-  const where = target === 'site' ? own : and(own, eq(table.siteId, (row as unknown as { siteId: number }).siteId));
+  const where =
+    target === 'site' ? own : and(own, eq(table.siteId, (row as unknown as { siteId: number }).siteId));
   const [current] = await tx.select().from(table).where(where).for('update');
   return current as unknown as Permitted<RowOf<T>>;
 }

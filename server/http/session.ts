@@ -21,7 +21,10 @@ export function checkOrigin(context: Context): RequestHandler {
     const origin = request.headers.origin;
     const host = request.headers.host;
     if (origin && verifyRequestOrigin(origin, [publicHost, ...(host ? [host] : [])])) return next();
-    throw new AppError('foreign-origin', 'This change came from another page than Cupel’s own, so it was not made.');
+    throw new AppError(
+      'foreign-origin',
+      'This change came from another page than Cupel’s own, so it was not made.',
+    );
   };
 }
 
@@ -45,4 +48,3 @@ export function loadActor(context: Context, sessions: Sessions): RequestHandler 
 export function setCookie(response: Response, cookie: string): void {
   response.appendHeader('Set-Cookie', cookie);
 }
-

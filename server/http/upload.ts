@@ -39,7 +39,9 @@ export async function receiveUpload(
     limits: { files: 1, fields: 10, fieldSize: 10_000, parts: 12 },
   });
   await new Promise<void>((resolve, reject) => {
-    upload.single('file')(request, response, (error: unknown) => (error ? reject(error as Error) : resolve()));
+    upload.single('file')(request, response, (error: unknown) =>
+      error ? reject(error as Error) : resolve(),
+    );
   }).catch((error: unknown) => {
     if (error instanceof multer.MulterError || error instanceof AppError) throw error;
     if (failure && !request.destroyed && !/unexpected end|aborted/i.test(failure.message)) throw failure;

@@ -15,7 +15,11 @@ export async function cleanUp(context: Context): Promise<void> {
 async function dropHistoryFiles(context: Context, before: Date): Promise<void> {
   await context.db.transaction(async (tx) => {
     const old = and(lt(historyImports.finishedAt, before), isNotNull(historyImports.fileId));
-    const rows = await tx.select({ fileId: historyImports.fileId }).from(historyImports).where(old).for('update');
+    const rows = await tx
+      .select({ fileId: historyImports.fileId })
+      .from(historyImports)
+      .where(old)
+      .for('update');
     if (rows.length === 0) return;
     await tx.update(historyImports).set({ fileId: null }).where(old);
     await tx.delete(files).where(sql`${files.id} = any(${sql.param(rows.map((row) => row.fileId))}::int[])`);

@@ -9,7 +9,7 @@ export interface Jobs {
   estimate: { siteId: number; softSensorId: number };
   judge: { siteId: number; softSensorId: number };
   'judge-all': Record<string, never>;
-  fit: { siteId: number; softSensorId: number; runId: number };
+  fit: { siteId: number; softSensorId: number; runId: number; from: string; to: string; version: number };
   replay: { siteId: number; replayId: number; runId: number };
   'unlock-dead-workers': Record<string, never>;
   'clean-up': Record<string, never>;

@@ -1,5 +1,7 @@
 import type { JobHelpers, TaskList } from 'graphile-worker';
 import type { Context } from '../context.ts';
+import { judgeNow } from '../features/judging/service.ts';
+import { queueJudgingOfAll } from '../features/judging/all.ts';
 import { sendQueuedMail } from '../features/mail/send.ts';
 import { cleanUp } from './clean-up.ts';
 import type { JobName, Jobs } from './queue.ts';
@@ -12,6 +14,11 @@ const tasks: { [N in JobName]?: Task<N> } = {
   'send-mail': sendQueuedMail,
   'unlock-dead-workers': unlockDeadWorkers,
   'clean-up': cleanUp,
+  estimate: (context, payload) => context.compute.run('estimate', payload, context.clock()),
+  judge: judgeNow,
+  'judge-all': queueJudgingOfAll,
+  fit: (context, payload) => context.compute.run('fit', payload, context.clock()),
+  replay: (context, payload) => context.compute.run('replay', payload, context.clock()),
 };
 
 export function taskList(context: Context): TaskList {

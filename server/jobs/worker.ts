@@ -21,17 +21,30 @@ export interface Workers {
 
 /** Starts this process's workers. Each holds an advisory lock that says it lives. */
 export async function startWorkers(context: Context): Promise<Workers> {
-  const pool = new pg.Pool({ connectionString: context.config.databaseDirectUrl, max: concurrency + 2, application_name: 'cupel-jobs' });
+  const pool = new pg.Pool({
+    connectionString: context.config.databaseDirectUrl,
+    max: concurrency + 2,
+    application_name: 'cupel-jobs',
+  });
   pool.on('error', (error) => context.log.warn({ error }, 'an idle queue connection was lost'));
-  pool.on('connect', (client) => client.on('error', (error) => context.log.warn({ error }, 'a queue connection was lost')));
-  const life = new pg.Client({ connectionString: context.config.databaseDirectUrl, application_name: 'cupel-worker-life' });
-  life.on('error', (error) => context.log.warn({ error }, 'the connection that shows this worker alive was lost'));
+  pool.on('connect', (client) =>
+    client.on('error', (error) => context.log.warn({ error }, 'a queue connection was lost')),
+  );
+  const life = new pg.Client({
+    connectionString: context.config.databaseDirectUrl,
+    application_name: 'cupel-worker-life',
+  });
+  life.on('error', (error) =>
+    context.log.warn({ error }, 'the connection that shows this worker alive was lost'),
+  );
   await life.connect();
   const events = new EventEmitter() as WorkerEvents;
   events.on('worker:create', ({ worker }) => {
-    life.query('select pg_advisory_lock($1, hashtext($2))', [lifeLock, worker.workerId]).catch((error: unknown) => {
-      context.log.warn({ error }, 'a worker could not show that it lives');
-    });
+    life
+      .query('select pg_advisory_lock($1, hashtext($2))', [lifeLock, worker.workerId])
+      .catch((error: unknown) => {
+        context.log.warn({ error }, 'a worker could not show that it lives');
+      });
   });
   const runner: Runner = await run({
     pgPool: pool,

@@ -8,7 +8,11 @@ export interface LinkFigures {
 }
 
 /** Mails with a one-time link: to set a first password or a new one. */
-export function linkLetter(purpose: 'set-password' | 'reset-password', figures: LinkFigures, link: string): Body {
+export function linkLetter(
+  purpose: 'set-password' | 'reset-password',
+  figures: LinkFigures,
+  link: string,
+): Body {
   const first = purpose === 'set-password';
   const lasts = figures.hours >= 48 ? `${figures.hours / 24} days` : `${figures.hours} hours`;
   return compose({
@@ -33,7 +37,12 @@ interface Parts {
 }
 
 function compose(parts: Parts): Body {
-  const text = [parts.greeting, ...parts.paragraphs, `${parts.action.label}:\n${parts.action.link}`, parts.closing].join('\n\n');
+  const text = [
+    parts.greeting,
+    ...parts.paragraphs,
+    `${parts.action.label}:\n${parts.action.link}`,
+    parts.closing,
+  ].join('\n\n');
   const paragraph = (inner: string) => `<p style="margin:0 0 16px">${inner}</p>`;
   const html =
     '<!doctype html><html lang="en"><body style="margin:0;background:#F6F3EC;color:#22282B;' +
@@ -49,4 +58,7 @@ function compose(parts: Parts): Body {
 }
 
 const escapeHtml = (text: string) =>
-  text.replace(/[&<>"']/g, (sign) => ({ '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;', "'": '&#39;' })[sign]!);
+  text.replace(
+    /[&<>"']/g,
+    (sign) => ({ '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;', "'": '&#39;' })[sign]!,
+  );

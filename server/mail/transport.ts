@@ -15,7 +15,11 @@ const transporters = new Map<string, Transporter>();
 export async function sendLetter(config: Config, smtpUrl: string, letter: Letter): Promise<void> {
   let transporter = transporters.get(smtpUrl);
   if (!transporter) {
-    transporter = nodemailer.createTransport({ url: smtpUrl, connectionTimeout: 10_000, greetingTimeout: 10_000 });
+    transporter = nodemailer.createTransport({
+      url: smtpUrl,
+      connectionTimeout: 10_000,
+      greetingTimeout: 10_000,
+    });
     transporters.set(smtpUrl, transporter);
   }
   await transporter.sendMail({ from: config.mailFrom, ...letter });

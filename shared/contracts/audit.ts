@@ -25,7 +25,8 @@ export const audit = {
     method: 'GET',
     path: '/audit',
     kind: 'json',
-    summary: 'Who did what, newest first: of the sites where the person may read it, and for administrators of the company',
+    summary:
+      'Who did what, newest first: of the sites where the person may read it, and for administrators of the company',
     access: { may: 'audit.read', on: 'sites' },
     query: z.object({
       ...pageQuery,

@@ -42,7 +42,15 @@ const month = z.object({ month: z.string(), unfit: z.number().int(), unproven: z
 
 export const board = z.object({
   counts,
-  sites: z.array(z.object({ siteId: idNumber, name: z.string(), zone: z.string(), total: z.number().int(), months: z.array(month) })),
+  sites: z.array(
+    z.object({
+      siteId: idNumber,
+      name: z.string(),
+      zone: z.string(),
+      total: z.number().int(),
+      months: z.array(month),
+    }),
+  ),
   /** Worst first; at most `limit`. */
   rows: z.array(boardRow),
   waiting: z.array(

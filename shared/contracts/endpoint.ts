@@ -28,13 +28,19 @@ export function endpoint<const E extends EndpointSpec>(spec: E & { example: z.in
   return spec;
 }
 
-type Part<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> = E[K] extends z.ZodType ? E[K] : never;
+type Part<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> = E[K] extends z.ZodType
+  ? E[K]
+  : never;
 
 /** What a handler receives, and what a client must give, for one part of an endpoint. */
-export type Received<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> = [Part<E, K>] extends [never]
+export type Received<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> = [Part<E, K>] extends [
+  never,
+]
   ? undefined
   : z.output<Part<E, K>>;
-export type Given<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> = [Part<E, K>] extends [never]
+export type Given<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> = [Part<E, K>] extends [
+  never,
+]
   ? undefined
   : z.input<Part<E, K>>;
 export type Reply<E extends EndpointSpec> = z.output<E['reply']>;
@@ -51,15 +57,14 @@ export function ids<const K extends string>(...names: K[]) {
   return z.object(Object.fromEntries(names.map((name) => [name, idText])) as Record<K, typeof idText>);
 }
 
-export const isoInstant = z.iso.datetime({ offset: true, message: 'must be an instant such as 2026-11-29T14:00:00Z' });
+export const isoInstant = z.iso.datetime({
+  offset: true,
+  message: 'must be an instant such as 2026-11-29T14:00:00Z',
+});
 export const nothing = z.object({});
 
 /** A sentence-sized text that must not be blank. */
 export const shortText = (label: string, max = 120) =>
-  z
-    .string()
-    .trim()
-    .min(1, `Write ${label}.`)
-    .max(max, `Keep ${label} under ${max} characters.`);
+  z.string().trim().min(1, `Write ${label}.`).max(max, `Keep ${label} under ${max} characters.`);
 export const longText = z.string().trim().max(4000, 'Keep it under 4,000 characters.');
 export const version = z.number().int().positive();

@@ -7,4 +7,5 @@ export const pageQuery = {
 };
 
 /** A page of rows with the number of all that match. */
-export const paged = <T extends z.ZodType>(row: T) => z.object({ rows: z.array(row), total: z.number().int() });
+export const paged = <T extends z.ZodType>(row: T) =>
+  z.object({ rows: z.array(row), total: z.number().int() });

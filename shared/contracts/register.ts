@@ -1,5 +1,15 @@
 import { z } from 'zod';
-import { endpoint, idNumber, ids, idText, isoInstant, longText, nothing, shortText, version } from './endpoint.ts';
+import {
+  endpoint,
+  idNumber,
+  ids,
+  idText,
+  isoInstant,
+  longText,
+  nothing,
+  shortText,
+  version,
+} from './endpoint.ts';
 import { health, healthReason, errorStripPoint } from './judging.ts';
 import { run } from './runs.ts';
 
@@ -17,7 +27,9 @@ export const regressionModel = z.object({
   form: z.literal('regression'),
   stepMs: step.int().min(1000, 'A step can’t be shorter than a second.'),
   /** How old a reading may be and still stand for its tag. */
-  holdLimitMs: positive('The hold limit').int().max(7 * 86_400_000, 'Hold a reading for at most 7 days.'),
+  holdLimitMs: positive('The hold limit')
+    .int()
+    .max(7 * 86_400_000, 'Hold a reading for at most 7 days.'),
   intercept: z.number(),
   terms: z
     .array(z.object({ tagId: idNumber, coefficient: z.number() }))
@@ -28,7 +40,9 @@ export const regressionModel = z.object({
 });
 export const externalModel = z.object({
   form: z.literal('external'),
-  holdLimitMs: positive('The hold limit').int().max(7 * 86_400_000, 'Hold a reading for at most 7 days.'),
+  holdLimitMs: positive('The hold limit')
+    .int()
+    .max(7 * 86_400_000, 'Hold a reading for at most 7 days.'),
   residualSd: z.number().positive().nullable(),
 });
 export const model = z.discriminatedUnion('form', [regressionModel, externalModel]);
@@ -108,7 +122,11 @@ export const sheetFields = z.object({
   consumers: z.array(consumer).max(20),
   samplePointId: idNumber.nullable(),
   methodId: idNumber.nullable(),
-  transportDelayMs: z.number().int().min(0, 'A delay can’t be negative.').max(7 * 86_400_000),
+  transportDelayMs: z
+    .number()
+    .int()
+    .min(0, 'A delay can’t be negative.')
+    .max(7 * 86_400_000),
   pairingWindowMs: z.number().int().min(0, 'A window can’t be negative.').max(86_400_000),
   steadyStateGate: z.boolean(),
   promisedReferenceMs: positive('The promised interval'),
@@ -131,7 +149,8 @@ export type SheetFields = z.infer<typeof sheetFields>;
 
 /** Rules between fields of a sheet; each names the field to mend. */
 export const sheetBody = sheetFields.superRefine((fields, context) => {
-  const say = (path: keyof SheetFields, message: string) => context.addIssue({ code: 'custom', path: [path], message });
+  const say = (path: keyof SheetFields, message: string) =>
+    context.addIssue({ code: 'custom', path: [path], message });
   if (fields.allowedErrorAbsolute === null && fields.allowedErrorPercent === null) {
     say('allowedErrorAbsolute', 'State the allowed error: absolute, in per cent of the value, or both.');
   }
@@ -358,7 +377,8 @@ export const register = {
     method: 'POST',
     path: '/soft-sensors/:softSensorId/draft/fit',
     kind: 'json',
-    summary: 'Fit the draft’s coefficients by least squares on the samples of a period; the run’s result is the fit',
+    summary:
+      'Fit the draft’s coefficients by least squares on the samples of a period; the run’s result is the fit',
     access: { may: 'softSensor.edit', on: 'softSensor' },
     params: ids('softSensorId'),
     body: z.object({ from: isoInstant, to: isoInstant, version }),

@@ -1,16 +1,28 @@
 import { z } from 'zod';
 import { endpoint, idNumber, ids, idText, isoInstant, nothing, shortText, version } from './endpoint.ts';
-import { dateOrder, decimalSign, delimiter } from './history.ts';
 import { pageQuery, paged } from './paging.ts';
-import { zone } from './sites.ts';
+import {
+  exampleImport,
+  exampleView,
+  sampleImport,
+  sampleImportView,
+  sampleMapping,
+} from './sample-import.ts';
+
+export type { SampleCounts, SampleImport, SampleImportView, SampleMapping } from './sample-import.ts';
+
+/** A soft sensor that the samples of a point go to. */
+const goesTo = z.object({ softSensorId: idNumber, tagName: z.string() });
 
 export const samplePoint = z.object({
   id: idNumber,
   siteId: idNumber,
   unitId: idNumber.nullable(),
+  unitName: z.string().nullable(),
   name: z.string(),
   archivedAt: isoInstant.nullable(),
   version,
+  goesTo: z.array(goesTo.extend({ unit: z.string(), methodId: idNumber.nullable() })),
 });
 export type SamplePoint = z.infer<typeof samplePoint>;
 
@@ -27,78 +39,6 @@ export const method = z.object({
 });
 export type LabMethod = z.infer<typeof method>;
 
-const column = z.number().int().min(0).nullable();
-
-/** How a file of samples is read; columns count from 0. What no column says, the person says for the whole file. */
-export const sampleMapping = z.object({
-  delimiter,
-  decimal: decimalSign,
-  headerLine: z.number().int().min(1).max(100),
-  dateOrder,
-  zone,
-  columns: z.object({
-    sampleNumber: column,
-    takenAt: z.number().int().min(0),
-    reportedAt: column,
-    value: z.number().int().min(0),
-    unit: column,
-    samplePoint: column,
-  }),
-  samplePointId: idNumber.nullable(),
-  methodId: idNumber.nullable(),
-  /** Unit of values that no column states. */
-  unit: z.string().trim().max(20),
-});
-export type SampleMapping = z.infer<typeof sampleMapping>;
-
-export const sampleOutcome = z.enum(['added', 'added-with-flag', 'held', 'skipped', 'refused']);
-
-export const sampleCounts = z.object({
-  rows: z.number().int(),
-  added: z.number().int(),
-  flagged: z.number().int(),
-  held: z.number().int(),
-  skipped: z.number().int(),
-  refused: z.number().int(),
-});
-export type SampleCounts = z.infer<typeof sampleCounts>;
-
-/** One row of a dry run: what happens to it and why, as a reason code with figures. */
-export const sampleRow = z.object({
-  line: z.number().int(),
-  outcome: sampleOutcome,
-  sampleNumber: z.string(),
-  taken: z.string(),
-  value: z.string(),
-  goesTo: z.array(z.string()),
-  reasons: z.array(z.object({ code: z.string(), figures: z.record(z.string(), z.union([z.string(), z.number()])) })),
-});
-export type SampleRow = z.infer<typeof sampleRow>;
-
-export const sampleImport = z.object({
-  id: idNumber,
-  siteId: idNumber,
-  fileName: z.string(),
-  state: z.enum(['uploaded', 'committed', 'undone']),
-  mapping: sampleMapping.nullable(),
-  counts: sampleCounts.nullable(),
-  version,
-  createdBy: z.string(),
-  createdAt: isoInstant,
-  committedAt: isoInstant.nullable(),
-  undoneAt: isoInstant.nullable(),
-});
-export type SampleImport = z.infer<typeof sampleImport>;
-
-export const sampleImportView = z.object({
-  import: sampleImport,
-  preview: z.object({ header: z.array(z.string()), rows: z.array(z.array(z.string())), proposed: sampleMapping }).nullable(),
-  /** Refused first, then held, flagged, skipped, added; the first 200 of each. */
-  rows: z.array(sampleRow),
-  sameAs: z.object({ importId: idNumber, at: isoInstant }).nullable(),
-});
-export type SampleImportView = z.infer<typeof sampleImportView>;
-
 export const sample = z.object({
   id: idNumber,
   siteId: idNumber,
@@ -111,15 +51,25 @@ export const sample = z.object({
   takenOn: z.string().nullable(),
   reportedAt: isoInstant,
   value: z.number(),
+  asWritten: z.string(),
   qualifier: z.enum(['<', '>']).nullable(),
   unit: z.string(),
   flags: z.array(z.string()),
   importId: idNumber.nullable(),
-  goesTo: z.array(z.object({ softSensorId: idNumber, tagName: z.string() })),
+  goesTo: z.array(goesTo),
 });
 export type Sample = z.infer<typeof sample>;
 
-const examplePoint: SamplePoint = { id: 1, siteId: 1, unitId: 1, name: 'KX-09', archivedAt: null, version: 1 };
+const examplePoint: SamplePoint = {
+  id: 1,
+  siteId: 1,
+  unitId: 1,
+  unitName: 'Melting furnace 1',
+  name: 'KX-09',
+  archivedAt: null,
+  version: 1,
+  goesTo: [{ softSensorId: 1, tagName: 'TY-1402', unit: '°C', methodId: 1 }],
+};
 const exampleMethod: LabMethod = {
   id: 1,
   siteId: 1,
@@ -131,20 +81,6 @@ const exampleMethod: LabMethod = {
   archivedAt: null,
   version: 1,
 };
-const exampleImport: SampleImport = {
-  id: 1,
-  siteId: 1,
-  fileName: 'furnace-pyrometry-wk48.csv',
-  state: 'uploaded',
-  mapping: null,
-  counts: null,
-  version: 1,
-  createdBy: 'Tove Halbrook',
-  createdAt: '2026-11-30T05:40:00.000Z',
-  committedAt: null,
-  undoneAt: null,
-};
-const exampleView: SampleImportView = { import: exampleImport, preview: null, rows: [], sameAs: null };
 const pointBody = z.object({ name: shortText('a name', 60), unitId: idNumber.nullable() });
 const precision = z.number().min(0, 'A precision limit can’t be negative.').nullable();
 const methodBody = z.object({
@@ -277,10 +213,10 @@ export const samples = {
     method: 'POST',
     path: '/sample-imports/:sampleImportId/commit',
     kind: 'json',
-    summary: 'Add the samples of a dry run, all in one transaction',
+    summary: 'Add the samples of the dry run that was seen, all in one transaction',
     access: { may: 'samples.add', on: 'sampleImport' },
     params: ids('sampleImportId'),
-    body: z.object({ version }),
+    body: z.object({ version, outcome: z.string().min(1) }),
     reply: sampleImportView,
     example: exampleView,
   }),

@@ -32,7 +32,9 @@ export interface RoleHolder {
 export function may(holder: RoleHolder, action: Action, siteId: number | null): boolean {
   const holders = matrix[action];
   if (holder.administrator && holders.includes('administrator')) return true;
-  return siteId !== null && holder.roles.some((held) => held.siteId === siteId && holders.includes(held.role));
+  return (
+    siteId !== null && holder.roles.some((held) => held.siteId === siteId && holders.includes(held.role))
+  );
 }
 
 /** Sites at which the person may do the action; 'every' for an administrator who may do it company-wide. */

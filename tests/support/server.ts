@@ -10,7 +10,9 @@ import { createApp } from '../../server/app.ts';
 import type { Context } from '../../server/context.ts';
 import { createDb, createPool } from '../../server/db/client.ts';
 import { persons, siteRoles } from '../../server/db/schema/index.ts';
+import { refreshSpan } from '../../server/features/tags/spans.ts';
 import { readConfig } from '../../server/env.ts';
+import { type ComputePool, createComputePool } from '../../server/jobs/compute-pool.ts';
 import { taskList } from '../../server/jobs/tasks.ts';
 import { quietLogger } from '../../server/jobs/quiet-logger.ts';
 import { type LocalMailServer, startLocalMailServer } from '../../server/mail/local-server.ts';
@@ -27,8 +29,14 @@ export interface TestServer {
   now: { value: Date | null };
   /** Runs every waiting job to its end. */
   drainJobs(): Promise<void>;
+  /** Counts a tag's readings anew, for tests that write readings themselves. */
+  refreshSpan(siteId: number, tagId: number): Promise<void>;
   /** Adds a person and returns an agent that is signed in as them. */
-  signedIn(who: { name?: string; administrator?: boolean; roles?: { siteId: number; role: Role }[] }): Promise<Agent>;
+  signedIn(who: {
+    name?: string;
+    administrator?: boolean;
+    roles?: { siteId: number; role: Role }[];
+  }): Promise<Agent>;
 }
 
 export type Agent = ReturnType<typeof request.agent> & { personId: number; email: string };
@@ -41,6 +49,7 @@ export function useServer(): TestServer {
   const server = { now: { value: null } } as unknown as TestServer;
   let admin: pg.Client;
   let mail: LocalMailServer;
+  let compute: ComputePool;
 
   beforeAll(async () => {
     admin = new pg.Client({ connectionString: databaseUrl('postgres') });
@@ -50,13 +59,15 @@ export function useServer(): TestServer {
     const config = readConfig({ DATABASE_URL: databaseUrl(name), NODE_ENV: 'test' });
     const pool = createPool(config.databaseUrl, log, 6);
     const clock = () => server.now.value ?? new Date();
-    const bare: Context = { config, pool, db: createDb(pool), log, clock };
+    compute = createComputePool(config);
+    const bare: Context = { config, pool, db: createDb(pool), log, clock, compute };
     mail = await startLocalMailServer(bare);
     server.context = { ...bare, config: { ...config, smtpUrl: mail.url } };
     server.app = createApp(server.context, { signInAttempts: 500 });
   });
   afterAll(async () => {
     await mail?.stop();
+    await compute?.stop();
     await server.context?.pool.end();
     await admin?.query(`drop database if exists ${name} with (force)`);
     await admin?.end();
@@ -70,6 +81,7 @@ export function useServer(): TestServer {
       noHandleSignals: true,
       noPreparedStatements: true,
     });
+  server.refreshSpan = (siteId, tagId) => refreshSpan(server.context.db, siteId, tagId);
   server.signedIn = (who) => signIn(server, who);
   return server;
 }
@@ -88,7 +100,8 @@ async function signIn(server: TestServer, who: Parameters<TestServer['signedIn']
       passwordHash: await (passwordHash ??= hashPassword(password)),
     })
     .returning();
-  if (who.roles?.length) await db.insert(siteRoles).values(who.roles.map((role) => ({ personId: person!.id, ...role })));
+  if (who.roles?.length)
+    await db.insert(siteRoles).values(who.roles.map((role) => ({ personId: person!.id, ...role })));
   const agent = request.agent(server.app).set('Origin', origin) as Agent;
   await agent.post('/api/v1/session').send({ email, password }).expect(200);
   return Object.assign(agent, { personId: person!.id, email });

@@ -22,5 +22,8 @@ export const auditEntries = pgTable(
     reason: text('reason').notNull().default(''),
     requestId: text('request_id').notNull(),
   },
-  (t) => [index('audit_entries_site').on(t.siteId, t.at), index('audit_entries_entity').on(t.entity, t.entityId, t.at)],
+  (t) => [
+    index('audit_entries_site').on(t.siteId, t.at),
+    index('audit_entries_entity').on(t.entity, t.entityId, t.at),
+  ],
 );

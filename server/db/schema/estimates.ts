@@ -13,7 +13,12 @@ import {
   unique,
   uniqueIndex,
 } from 'drizzle-orm/pg-core';
-import { healths, type ErrorStripPoint, type HealthReason, type ReplayFigures } from '../../../shared/contracts/judging.ts';
+import {
+  healths,
+  type ErrorStripPoint,
+  type HealthReason,
+  type ReplayFigures,
+} from '../../../shared/contracts/judging.ts';
 import type { Model } from '../../../shared/contracts/register.ts';
 import { bigIdentity, bytes, identity, instant } from './columns.ts';
 import { persons } from './people.ts';
@@ -91,7 +96,11 @@ export const pairs = pgTable(
       columns: [t.siteId, t.softSensorId],
       foreignColumns: [softSensors.siteId, softSensors.id],
     }),
-    foreignKey({ name: 'pairs_sample_fk', columns: [t.siteId, t.sampleId], foreignColumns: [samples.siteId, samples.id] }),
+    foreignKey({
+      name: 'pairs_sample_fk',
+      columns: [t.siteId, t.sampleId],
+      foreignColumns: [samples.siteId, samples.id],
+    }),
     foreignKey({
       name: 'pairs_revision_fk',
       columns: [t.siteId, t.revisionId],
@@ -196,8 +205,16 @@ export const replays = pgTable(
       columns: [t.siteId, t.revisionId],
       foreignColumns: [revisions.siteId, revisions.id],
     }),
-    foreignKey({ name: 'replays_draft_fk', columns: [t.siteId, t.draftId], foreignColumns: [drafts.siteId, drafts.id] }),
-    foreignKey({ name: 'replays_run_fk', columns: [t.siteId, t.runId], foreignColumns: [runs.siteId, runs.id] }),
+    foreignKey({
+      name: 'replays_draft_fk',
+      columns: [t.siteId, t.draftId],
+      foreignColumns: [drafts.siteId, drafts.id],
+    }),
+    foreignKey({
+      name: 'replays_run_fk',
+      columns: [t.siteId, t.runId],
+      foreignColumns: [runs.siteId, runs.id],
+    }),
     check('replays_period', sql`${t.fromAt} < ${t.toAt}`),
   ],
 );

@@ -36,7 +36,9 @@ export const historyImports = pgTable(
     sha256: text('sha256').notNull(),
     layout: jsonb('layout').$type<HistoryLayout>(),
     replaceExisting: boolean('replace_existing').notNull().default(false),
-    state: text('state', { enum: ['uploaded', 'waiting', 'running', 'done', 'failed', 'cancelled'] }).notNull().default('uploaded'),
+    state: text('state', { enum: ['uploaded', 'waiting', 'running', 'done', 'failed', 'cancelled'] })
+      .notNull()
+      .default('uploaded'),
     lineDone: bigint('line_done', { mode: 'number' }).notNull().default(0),
     added: bigint('added', { mode: 'number' }).notNull().default(0),
     unchanged: bigint('unchanged', { mode: 'number' }).notNull().default(0),
@@ -55,9 +57,20 @@ export const historyImports = pgTable(
   (t) => [
     unique('history_imports_site_id_key').on(t.siteId, t.id),
     index('history_imports_sha').on(t.siteId, t.sha256),
-    foreignKey({ name: 'history_imports_file_fk', columns: [t.siteId, t.fileId], foreignColumns: [files.siteId, files.id] }),
-    foreignKey({ name: 'history_imports_run_fk', columns: [t.siteId, t.runId], foreignColumns: [runs.siteId, runs.id] }),
-    check('history_imports_state', sql`${t.state} in ('uploaded', 'waiting', 'running', 'done', 'failed', 'cancelled')`),
+    foreignKey({
+      name: 'history_imports_file_fk',
+      columns: [t.siteId, t.fileId],
+      foreignColumns: [files.siteId, files.id],
+    }),
+    foreignKey({
+      name: 'history_imports_run_fk',
+      columns: [t.siteId, t.runId],
+      foreignColumns: [runs.siteId, runs.id],
+    }),
+    check(
+      'history_imports_state',
+      sql`${t.state} in ('uploaded', 'waiting', 'running', 'done', 'failed', 'cancelled')`,
+    ),
   ],
 );
 

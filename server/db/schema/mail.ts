@@ -18,7 +18,9 @@ export const mails = pgTable(
     figures: jsonb('figures').$type<Record<string, unknown>>().notNull(),
     messageId: text('message_id').notNull().unique(),
     subject: text('subject'),
-    state: text('state', { enum: ['waiting', 'sent', 'failed'] }).notNull().default('waiting'),
+    state: text('state', { enum: ['waiting', 'sent', 'failed'] })
+      .notNull()
+      .default('waiting'),
     attempts: integer('attempts').notNull().default(0),
     lastError: text('last_error'),
     createdAt: instant('created_at').notNull(),

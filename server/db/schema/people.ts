@@ -59,7 +59,10 @@ export const oneTimeLinks = pgTable(
     createdAt: instant('created_at').notNull().defaultNow(),
   },
   (t) => [
-    check('one_time_links_purpose', sql`${t.purpose} in ('set-password', 'reset-password', 'first-administrator')`),
+    check(
+      'one_time_links_purpose',
+      sql`${t.purpose} in ('set-password', 'reset-password', 'first-administrator')`,
+    ),
     check('one_time_links_person', sql`(${t.personId} is null) = (${t.purpose} = 'first-administrator')`),
   ],
 );

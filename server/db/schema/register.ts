@@ -49,10 +49,14 @@ export const softSensors = pgTable(
     allowedErrorPercent: doublePrecision('allowed_error_percent'),
     allowedSpread: doublePrecision('allowed_spread'),
     logScale: boolean('log_scale').notNull().default(false),
-    historyArrives: text('history_arrives', { enum: ['live', 'uploaded'] }).notNull().default('uploaded'),
+    historyArrives: text('history_arrives', { enum: ['live', 'uploaded'] })
+      .notNull()
+      .default('uploaded'),
     historyEveryMs: doublePrecision('history_every_ms').notNull(),
     externalCorrectedSince: instant('external_corrected_since'),
-    correctionMode: text('correction_mode', { enum: ['monitor', 'propose', 'automatic'] }).notNull().default('propose'),
+    correctionMode: text('correction_mode', { enum: ['monitor', 'propose', 'automatic'] })
+      .notNull()
+      .default('propose'),
     updateFactor: doublePrecision('update_factor').notNull().default(0.2),
     recalibrationMonths: integer('recalibration_months').notNull(),
     reviewMonths: integer('review_months').notNull(),
@@ -68,8 +72,16 @@ export const softSensors = pgTable(
     unique('soft_sensors_site_id_key').on(t.siteId, t.id),
     uniqueIndex('soft_sensors_tag_name_key').on(t.siteId, sql`lower(${t.tagName})`),
     index('soft_sensors_sample_point').on(t.siteId, t.samplePointId),
-    foreignKey({ name: 'soft_sensors_unit_fk', columns: [t.siteId, t.unitId], foreignColumns: [units.siteId, units.id] }),
-    foreignKey({ name: 'soft_sensors_tag_fk', columns: [t.siteId, t.estimateTagId], foreignColumns: [tags.siteId, tags.id] }),
+    foreignKey({
+      name: 'soft_sensors_unit_fk',
+      columns: [t.siteId, t.unitId],
+      foreignColumns: [units.siteId, units.id],
+    }),
+    foreignKey({
+      name: 'soft_sensors_tag_fk',
+      columns: [t.siteId, t.estimateTagId],
+      foreignColumns: [tags.siteId, tags.id],
+    }),
     foreignKey({
       name: 'soft_sensors_point_fk',
       columns: [t.siteId, t.samplePointId],
@@ -126,7 +138,9 @@ export const lifeStates = pgTable(
     id: identity(),
     siteId: integer('site_id').notNull(),
     softSensorId: integer('soft_sensor_id').notNull(),
-    state: text('state', { enum: ['draft', 'in-validation', 'in-service', 'suspended', 'retired'] }).notNull(),
+    state: text('state', {
+      enum: ['draft', 'in-validation', 'in-service', 'suspended', 'retired'],
+    }).notNull(),
     effectiveFrom: instant('effective_from').notNull(),
     recordedBy: integer('recorded_by')
       .notNull()
@@ -140,7 +154,10 @@ export const lifeStates = pgTable(
       columns: [t.siteId, t.softSensorId],
       foreignColumns: [softSensors.siteId, softSensors.id],
     }),
-    check('life_states_state', sql`${t.state} in ('draft', 'in-validation', 'in-service', 'suspended', 'retired')`),
+    check(
+      'life_states_state',
+      sql`${t.state} in ('draft', 'in-validation', 'in-service', 'suspended', 'retired')`,
+    ),
   ],
 );
 

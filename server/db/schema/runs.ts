@@ -15,7 +15,9 @@ export const runs = pgTable(
       .references(() => sites.id),
     kind: text('kind', { enum: ['history-import', 'fit', 'replay', 'estimate'] }).notNull(),
     subjectId: integer('subject_id'),
-    state: text('state', { enum: ['waiting', 'running', 'done', 'failed', 'cancelled'] }).notNull().default('waiting'),
+    state: text('state', { enum: ['waiting', 'running', 'done', 'failed', 'cancelled'] })
+      .notNull()
+      .default('waiting'),
     done: bigint('done', { mode: 'number' }).notNull().default(0),
     total: bigint('total', { mode: 'number' }),
     cancelRequested: boolean('cancel_requested').notNull().default(false),
@@ -31,6 +33,9 @@ export const runs = pgTable(
     index('runs_subject').on(t.siteId, t.kind, t.subjectId),
     check('runs_kind', sql`${t.kind} in ('history-import', 'fit', 'replay', 'estimate')`),
     check('runs_state', sql`${t.state} in ('waiting', 'running', 'done', 'failed', 'cancelled')`),
-    check('runs_finished', sql`(${t.finishedAt} is not null) = (${t.state} in ('done', 'failed', 'cancelled'))`),
+    check(
+      'runs_finished',
+      sql`(${t.finishedAt} is not null) = (${t.state} in ('done', 'failed', 'cancelled'))`,
+    ),
   ],
 );

@@ -56,7 +56,11 @@ export const samplePoints = pgTable(
   (t) => [
     unique('sample_points_site_id_key').on(t.siteId, t.id),
     uniqueIndex('sample_points_name_key').on(t.siteId, sql`lower(${t.name})`),
-    foreignKey({ name: 'sample_points_unit_fk', columns: [t.siteId, t.unitId], foreignColumns: [units.siteId, units.id] }),
+    foreignKey({
+      name: 'sample_points_unit_fk',
+      columns: [t.siteId, t.unitId],
+      foreignColumns: [units.siteId, units.id],
+    }),
   ],
 );
 
@@ -72,7 +76,9 @@ export const sampleImports = pgTable(
     fileName: text('file_name').notNull(),
     sha256: text('sha256').notNull(),
     mapping: jsonb('mapping').$type<SampleMapping>(),
-    state: text('state', { enum: ['uploaded', 'committed', 'undone'] }).notNull().default('uploaded'),
+    state: text('state', { enum: ['uploaded', 'committed', 'undone'] })
+      .notNull()
+      .default('uploaded'),
     counts: jsonb('counts').$type<SampleCounts>(),
     version: integer('version').notNull().default(1),
     createdBy: integer('created_by')
@@ -86,9 +92,16 @@ export const sampleImports = pgTable(
   (t) => [
     unique('sample_imports_site_id_key').on(t.siteId, t.id),
     index('sample_imports_sha').on(t.siteId, t.sha256),
-    foreignKey({ name: 'sample_imports_file_fk', columns: [t.siteId, t.fileId], foreignColumns: [files.siteId, files.id] }),
+    foreignKey({
+      name: 'sample_imports_file_fk',
+      columns: [t.siteId, t.fileId],
+      foreignColumns: [files.siteId, files.id],
+    }),
     check('sample_imports_state', sql`${t.state} in ('uploaded', 'committed', 'undone')`),
-    check('sample_imports_committed', sql`(${t.committedAt} is not null) = (${t.state} in ('committed', 'undone'))`),
+    check(
+      'sample_imports_committed',
+      sql`(${t.committedAt} is not null) = (${t.state} in ('committed', 'undone'))`,
+    ),
   ],
 );
 
@@ -138,7 +151,11 @@ export const samples = pgTable(
       columns: [t.siteId, t.samplePointId],
       foreignColumns: [samplePoints.siteId, samplePoints.id],
     }),
-    foreignKey({ name: 'samples_method_fk', columns: [t.siteId, t.methodId], foreignColumns: [methods.siteId, methods.id] }),
+    foreignKey({
+      name: 'samples_method_fk',
+      columns: [t.siteId, t.methodId],
+      foreignColumns: [methods.siteId, methods.id],
+    }),
     foreignKey({
       name: 'samples_import_fk',
       columns: [t.siteId, t.importId],

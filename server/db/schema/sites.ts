@@ -26,7 +26,10 @@ export const areas = pgTable(
     archivedAt: instant('archived_at'),
     version: integer('version').notNull().default(1),
   },
-  (t) => [unique('areas_site_id_key').on(t.siteId, t.id), uniqueIndex('areas_name_key').on(t.siteId, sql`lower(${t.name})`)],
+  (t) => [
+    unique('areas_site_id_key').on(t.siteId, t.id),
+    uniqueIndex('areas_name_key').on(t.siteId, sql`lower(${t.name})`),
+  ],
 );
 
 export const units = pgTable(
@@ -44,6 +47,10 @@ export const units = pgTable(
   (t) => [
     unique('units_site_id_key').on(t.siteId, t.id),
     uniqueIndex('units_name_key').on(t.siteId, t.areaId, sql`lower(${t.name})`),
-    foreignKey({ name: 'units_area_fk', columns: [t.siteId, t.areaId], foreignColumns: [areas.siteId, areas.id] }),
+    foreignKey({
+      name: 'units_area_fk',
+      columns: [t.siteId, t.areaId],
+      foreignColumns: [areas.siteId, areas.id],
+    }),
   ],
 );

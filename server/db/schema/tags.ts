@@ -27,7 +27,9 @@ export const tags = pgTable(
     name: text('name').notNull(),
     description: text('description').notNull().default(''),
     unit: text('unit').notNull(),
-    kind: text('kind', { enum: ['measured', 'estimate', 'shadow'] }).notNull().default('measured'),
+    kind: text('kind', { enum: ['measured', 'estimate', 'shadow'] })
+      .notNull()
+      .default('measured'),
     rangeLow: doublePrecision('range_low'),
     rangeHigh: doublePrecision('range_high'),
     archivedAt: instant('archived_at'),
@@ -36,7 +38,11 @@ export const tags = pgTable(
   (t) => [
     unique('tags_site_id_key').on(t.siteId, t.id),
     uniqueIndex('tags_name_key').on(t.siteId, sql`lower(${t.name})`),
-    foreignKey({ name: 'tags_unit_fk', columns: [t.siteId, t.unitId], foreignColumns: [units.siteId, units.id] }),
+    foreignKey({
+      name: 'tags_unit_fk',
+      columns: [t.siteId, t.unitId],
+      foreignColumns: [units.siteId, units.id],
+    }),
     check('tags_kind', sql`${t.kind} in ('measured', 'estimate', 'shadow')`),
     check('tags_range', sql`${t.rangeLow} < ${t.rangeHigh}`),
   ],
@@ -99,7 +105,11 @@ export const tagSpans = pgTable(
   },
   (t) => [
     primaryKey({ name: 'tag_spans_pkey', columns: [t.siteId, t.tagId] }),
-    foreignKey({ name: 'tag_spans_tag_fk', columns: [t.siteId, t.tagId], foreignColumns: [tags.siteId, tags.id] }),
+    foreignKey({
+      name: 'tag_spans_tag_fk',
+      columns: [t.siteId, t.tagId],
+      foreignColumns: [tags.siteId, tags.id],
+    }),
     index('tag_spans_last').on(t.siteId, t.lastAt),
   ],
 );

@@ -19,7 +19,9 @@ export async function listAudit(db: Queryable, siteIds: number[] | 'every', filt
     filter.siteId === undefined ? undefined : eq(auditEntries.siteId, filter.siteId),
     filter.entity === undefined ? undefined : eq(auditEntries.entity, filter.entity),
     filter.entityId === undefined ? undefined : eq(auditEntries.entityId, filter.entityId),
-    text === undefined ? undefined : or(ilike(auditEntries.entityName, text), ilike(auditEntries.personName, text)),
+    text === undefined
+      ? undefined
+      : or(ilike(auditEntries.entityName, text), ilike(auditEntries.personName, text)),
   );
   const rows = await db
     .select({

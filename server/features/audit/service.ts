@@ -7,7 +7,20 @@ export interface AuditNote {
   siteId: number | null;
   actor: Pick<Actor, 'id' | 'name'> | null;
   origin: Origin;
-  action: 'add' | 'change' | 'archive' | 'take-back' | 'remove' | 'commit' | 'undo' | 'propose' | 'decide' | 'start' | 'sign-in' | 'sign-out' | 'set-password';
+  action:
+    | 'add'
+    | 'change'
+    | 'archive'
+    | 'take-back'
+    | 'remove'
+    | 'commit'
+    | 'undo'
+    | 'propose'
+    | 'decide'
+    | 'start'
+    | 'sign-in'
+    | 'sign-out'
+    | 'set-password';
   entity: string;
   entityId: number | string;
   entityName: string;

@@ -29,7 +29,12 @@ export async function markDirty(tx: Queryable, siteId: number, tagIds: number[],
 }
 
 /** Marks one soft sensor as out of date from an instant on. */
-export async function markSensorDirty(tx: Queryable, siteId: number, softSensorId: number, from: Date): Promise<void> {
+export async function markSensorDirty(
+  tx: Queryable,
+  siteId: number,
+  softSensorId: number,
+  from: Date,
+): Promise<void> {
   await tx.execute(sql`
     insert into soft_sensor_work (site_id, soft_sensor_id, dirty_from)
     values (${siteId}, ${softSensorId}, ${from.toISOString()}::timestamptz)

@@ -2,7 +2,10 @@ import { and, eq } from 'drizzle-orm';
 import type { Queryable } from '../../db/client.ts';
 import { fileChunks, files } from '../../db/schema/index.ts';
 
-export async function addFile(db: Queryable, row: typeof files.$inferInsert): Promise<typeof files.$inferSelect> {
+export async function addFile(
+  db: Queryable,
+  row: typeof files.$inferInsert,
+): Promise<typeof files.$inferSelect> {
   const [file] = await db.insert(files).values(row).returning();
   return file!;
 }
@@ -19,7 +22,9 @@ export async function chunkAt(
   const [row] = await db
     .select({ bytes: fileChunks.bytes })
     .from(fileChunks)
-    .where(and(eq(fileChunks.siteId, key.siteId), eq(fileChunks.fileId, key.fileId), eq(fileChunks.chunk, chunk)));
+    .where(
+      and(eq(fileChunks.siteId, key.siteId), eq(fileChunks.fileId, key.fileId), eq(fileChunks.chunk, chunk)),
+    );
   return row?.bytes ?? null;
 }
 

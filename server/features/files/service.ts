@@ -34,7 +34,12 @@ export async function storeFile(
     let heldBytes = 0;
     const flush = async (): Promise<void> => {
       if (heldBytes === 0) return;
-      await addChunk(tx, { siteId: about.siteId, fileId: file.id, chunk: chunk++, bytes: Buffer.concat(held) });
+      await addChunk(tx, {
+        siteId: about.siteId,
+        fileId: file.id,
+        chunk: chunk++,
+        bytes: Buffer.concat(held),
+      });
       held = [];
       heldBytes = 0;
     };

@@ -14,7 +14,9 @@ export async function listMails(db: Queryable, page: { page: number; perPage: nu
       lastError: mails.lastError,
       createdAt: mails.createdAt,
       sentAt: mails.sentAt,
-      localMailId: sql<number | null>`(select id from local_mails l where l.message_id = ${mails.messageId} order by id desc limit 1)`,
+      localMailId: sql<
+        number | null
+      >`(select id from local_mails l where l.message_id = ${mails.messageId} order by id desc limit 1)`,
     })
     .from(mails)
     .orderBy(desc(mails.createdAt), desc(mails.id))

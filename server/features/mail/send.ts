@@ -18,10 +18,20 @@ export async function sendQueuedMail(context: Context, { mailId }: { mailId: num
     if (!mail) return null;
     try {
       const body = await render(context, mail);
-      await sendLetter(context.config, context.config.smtpUrl!, { to: mail.toAddress, messageId: mail.messageId, ...body });
+      await sendLetter(context.config, context.config.smtpUrl!, {
+        to: mail.toAddress,
+        messageId: mail.messageId,
+        ...body,
+      });
       await tx
         .update(mails)
-        .set({ state: 'sent', subject: body.subject, sentAt: context.clock(), attempts: mail.attempts + 1, lastError: null })
+        .set({
+          state: 'sent',
+          subject: body.subject,
+          sentAt: context.clock(),
+          attempts: mail.attempts + 1,
+          lastError: null,
+        })
         .where(eq(mails.id, mailId));
       return null;
     } catch (error) {

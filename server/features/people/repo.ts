@@ -67,7 +67,11 @@ export async function findLink(db: Queryable, tokenHash: string, now: Date, lock
     .select()
     .from(oneTimeLinks)
     .where(
-      and(eq(oneTimeLinks.tokenHash, tokenHash), isNull(oneTimeLinks.usedAt), gt(oneTimeLinks.expiresAt, now)),
+      and(
+        eq(oneTimeLinks.tokenHash, tokenHash),
+        isNull(oneTimeLinks.usedAt),
+        gt(oneTimeLinks.expiresAt, now),
+      ),
     );
   const [link] = lock ? await query.for('update') : await query;
   return link ?? null;

@@ -23,7 +23,8 @@ export const peopleRoutes = (context: Context) =>
     'auth.useLink': ({ body, response, origin }) => useLink(context, response, body, origin),
     'people.list': async () => ({ rows: await everybody(context) }),
     'people.add': ({ body, actor, origin }) => addNewPerson(context, actor, body, origin),
-    'people.change': ({ params, body, actor, origin }) => changePerson(context, actor, params.personId, body, origin),
+    'people.change': ({ params, body, actor, origin }) =>
+      changePerson(context, actor, params.personId, body, origin),
     'people.sendLink': async ({ params, actor, origin }) => {
       await sendLinkTo(context, actor, params.personId, origin);
       return done;

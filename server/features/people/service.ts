@@ -24,10 +24,19 @@ async function personNow(tx: Tx, id: number): Promise<Person> {
 }
 
 /** Adds a person and mails them a link to set their password. */
-export async function addNewPerson(context: Context, actor: Actor, body: NewPerson, origin: Origin): Promise<Person> {
+export async function addNewPerson(
+  context: Context,
+  actor: Actor,
+  body: NewPerson,
+  origin: Origin,
+): Promise<Person> {
   return context.db.transaction(async (tx) => {
     await refuseTakenAddress(tx, body.email, null);
-    const person = await addPerson(tx, { name: body.name, email: body.email, administrator: body.administrator });
+    const person = await addPerson(tx, {
+      name: body.name,
+      email: body.email,
+      administrator: body.administrator,
+    });
     await replaceRoles(tx, person.id, body.roles);
     await queueLinkMail(context, tx, person, 'set-password');
     const after = await personNow(tx, person.id);
@@ -57,7 +66,11 @@ export async function changePerson(
         name: body.name,
         email: body.email,
         administrator: body.administrator,
-        deactivatedAt: body.deactivated ? (before.deactivatedAt ? new Date(before.deactivatedAt) : context.clock()) : null,
+        deactivatedAt: body.deactivated
+          ? before.deactivatedAt
+            ? new Date(before.deactivatedAt)
+            : context.clock()
+          : null,
         version: body.version + 1,
       })
       .where(eq(persons.id, personId));
@@ -70,10 +83,16 @@ export async function changePerson(
   return after;
 }
 
-export async function sendLinkTo(context: Context, actor: Actor, personId: number, origin: Origin): Promise<void> {
+export async function sendLinkTo(
+  context: Context,
+  actor: Actor,
+  personId: number,
+  origin: Origin,
+): Promise<void> {
   await context.db.transaction(async (tx) => {
     const person = await personNow(tx, personId);
-    if (person.deactivatedAt) throw new AppError('conflict', `${person.name} is deactivated. Take them back first.`);
+    if (person.deactivatedAt)
+      throw new AppError('conflict', `${person.name} is deactivated. Take them back first.`);
     await queueLinkMail(context, tx, person, person.hasPassword ? 'reset-password' : 'set-password');
     await note(context, tx, actor, origin, 'start', null, { ...person });
   });
@@ -89,7 +108,11 @@ async function refuseTakenAddress(tx: Tx, email: string, exceptId: number | null
 async function refuseLastAdministrator(tx: Tx, personId: number): Promise<void> {
   const others = await tx.$count(
     persons,
-    and(eq(persons.administrator, true), sql`${persons.deactivatedAt} is null`, sql`${persons.id} <> ${personId}`),
+    and(
+      eq(persons.administrator, true),
+      sql`${persons.deactivatedAt} is null`,
+      sql`${persons.id} <> ${personId}`,
+    ),
   );
   if (others > 0) return;
   const message = 'This is the last administrator. Make somebody else an administrator first.';

@@ -25,7 +25,10 @@ import {
 
 const linkHours = { 'set-password': 7 * 24, 'reset-password': 2, 'first-administrator': 24 } as const;
 const linkGone = () =>
-  new AppError('link-used', 'This link was used already or is too old. Ask for a new one on the sign-in page.');
+  new AppError(
+    'link-used',
+    'This link was used already or is too old. Ask for a new one on the sign-in page.',
+  );
 
 export const toSelf = (actor: Actor): Self => actor;
 
@@ -40,13 +43,23 @@ export async function signIn(
   const matches = await passwordMatches(person?.passwordHash, given.password);
   if (!person || !matches || person.deactivatedAt) {
     throw new AppError('wrong-password', 'E-mail address and password don’t go together.', {
-      fields: [{ path: 'password', message: 'Check the address and the password, or ask for a link to set a new one.' }],
+      fields: [
+        {
+          path: 'password',
+          message: 'Check the address and the password, or ask for a link to set a new one.',
+        },
+      ],
     });
   }
   return openSession(context, response, person.id, origin);
 }
 
-async function openSession(context: Context, response: Response, personId: number, origin: Origin): Promise<Self> {
+async function openSession(
+  context: Context,
+  response: Response,
+  personId: number,
+  origin: Origin,
+): Promise<Self> {
   const sessions = response.locals.sessions as Sessions;
   const actor = (await findActor(context.db, personId))!;
   const session = await sessions.createSession(personId, {});
@@ -66,7 +79,12 @@ async function openSession(context: Context, response: Response, personId: numbe
   return toSelf(actor);
 }
 
-export async function signOut(context: Context, response: Response, actor: Actor | null, origin: Origin): Promise<void> {
+export async function signOut(
+  context: Context,
+  response: Response,
+  actor: Actor | null,
+  origin: Origin,
+): Promise<void> {
   const sessions = response.locals.sessions as Sessions;
   if (response.locals.sessionId) {
     await sessions.invalidateSession(response.locals.sessionId as string);
@@ -176,7 +194,8 @@ async function addFirstAdministrator(tx: Tx, given: { name?: string; email?: str
     ...(given.name ? [] : [{ path: 'name', message: 'Write your name.' }]),
     ...(given.email ? [] : [{ path: 'email', message: 'Write your e-mail address.' }]),
   ];
-  if (fields.length > 0) throw new AppError('invalid-input', 'Name and e-mail address are missing.', { fields });
+  if (fields.length > 0)
+    throw new AppError('invalid-input', 'Name and e-mail address are missing.', { fields });
   const person = await addPerson(tx, { name: given.name!, email: given.email!, administrator: true });
   return person.id;
 }

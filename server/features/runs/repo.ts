@@ -8,14 +8,26 @@ export type RunKind = RunRow['kind'];
 
 export async function addRun(
   db: Queryable,
-  row: { siteId: number; kind: RunKind; subjectId: number; createdBy: number | null; createdAt: Date; total?: number },
+  row: {
+    siteId: number;
+    kind: RunKind;
+    subjectId: number;
+    createdBy: number | null;
+    createdAt: Date;
+    total?: number;
+  },
 ): Promise<RunRow> {
   const [run] = await db.insert(runs).values(row).returning();
   return run!;
 }
 
 /** Tells how far a run is; returns true where somebody asked it to stop. */
-export async function reportProgress(db: Queryable, id: number, done: number, total?: number): Promise<boolean> {
+export async function reportProgress(
+  db: Queryable,
+  id: number,
+  done: number,
+  total?: number,
+): Promise<boolean> {
   const [row] = await db
     .update(runs)
     .set({ done, ...(total === undefined ? {} : { total }) })
@@ -27,7 +39,12 @@ export async function reportProgress(db: Queryable, id: number, done: number, to
 export async function startRun(db: Queryable, id: number, now: Date): Promise<RunRow> {
   const [row] = await db
     .update(runs)
-    .set({ state: 'running', startedAt: sql`coalesce(${runs.startedAt}, ${now.toISOString()}::timestamptz)`, finishedAt: null, problem: null })
+    .set({
+      state: 'running',
+      startedAt: sql`coalesce(${runs.startedAt}, ${now.toISOString()}::timestamptz)`,
+      finishedAt: null,
+      problem: null,
+    })
     .where(eq(runs.id, id))
     .returning();
   return row!;
@@ -37,7 +54,8 @@ export async function finishRun(
   db: Queryable,
   id: number,
   now: Date,
-  end: { state: 'done'; result: Record<string, unknown> } | { state: 'failed' | 'cancelled'; problem: Problem },
+  end:
+    { state: 'done'; result: Record<string, unknown> } | { state: 'failed' | 'cancelled'; problem: Problem },
 ): Promise<void> {
   await db
     .update(runs)

@@ -1,5 +1,5 @@
 import { AppError, toProblem } from '../../../shared/contracts/errors.ts';
-import type { Context } from '../../context.ts';
+import type { ComputeContext } from '../estimates/context.ts';
 import { finishRun, reportProgress, startRun } from './repo.ts';
 
 /** What long work gets: a way to say how far it is, which stops it when somebody asked for that. */
@@ -12,7 +12,7 @@ export interface Progress {
  * a fault of ours: told as such, logged, and thrown on so that the queue tries again.
  */
 export async function carryOut(
-  context: Context,
+  context: ComputeContext,
   runId: number,
   work: (progress: Progress) => Promise<Record<string, unknown>>,
 ): Promise<void> {
@@ -29,7 +29,10 @@ export async function carryOut(
     const result = await work(progress);
     await finishRun(context.db, runId, context.clock(), { state: 'done', result });
   } catch (error) {
-    const known = error instanceof AppError ? error : new AppError('unexpected', 'This stopped because of a fault on our side. It is tried again.');
+    const known =
+      error instanceof AppError
+        ? error
+        : new AppError('unexpected', 'This stopped because of a fault on our side. It is tried again.');
     const state = known.code === 'cancelled' ? 'cancelled' : 'failed';
     await finishRun(context.db, runId, context.clock(), { state, problem: toProblem(known) });
     if (!(error instanceof AppError)) throw error;

@@ -58,7 +58,12 @@ export async function changeSite(
   });
 }
 
-export async function addArea(context: Context, by: By, site: Permitted<SiteRow>, body: { name: string }): Promise<Area> {
+export async function addArea(
+  context: Context,
+  by: By,
+  site: Permitted<SiteRow>,
+  body: { name: string },
+): Promise<Area> {
   return context.db.transaction(async (tx) => {
     const [after] = await tx.insert(areas).values({ siteId: site.id, name: body.name }).returning();
     await note(context, tx, by, 'area', site.id, 'add', null, after!);

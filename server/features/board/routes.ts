@@ -1,0 +1,9 @@
+import { boards } from '../../../shared/contracts/board.ts';
+import type { Context } from '../../context.ts';
+import { routesOf } from '../../http/front-door.ts';
+import { readBoard } from './service.ts';
+
+export const boardRoutes = (context: Context) =>
+  routesOf(context, boards, {
+    'board.get': ({ actor, siteIds, query }) => readBoard(context, actor, { ...query, siteIds }),
+  });

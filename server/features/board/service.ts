@@ -1,0 +1,44 @@
+import { format, subMonths } from 'date-fns';
+import type { Board } from '../../../shared/contracts/board.ts';
+import type { Context } from '../../context.ts';
+import type { Actor } from '../../http/request.ts';
+import { type BoardFilter, countBySite, monthsBySite, waitingFor, worstFirst } from './repo.ts';
+
+const monthsShown = 12;
+
+/** The board: counts, months, what waits, worst first. It reads what judging wrote and judges nothing itself. */
+export async function readBoard(context: Context, actor: Actor, filter: BoardFilter): Promise<Board> {
+  const now = context.clock();
+  const since = format(subMonths(now, monthsShown - 1), 'yyyy-MM-01');
+  const managed = actor.roles.filter((held) => held.role === 'manager').map((held) => held.siteId);
+  const [bySite, rows, months, waiting] = await Promise.all([
+    countBySite(context.db, filter),
+    worstFirst(context.db, filter),
+    monthsBySite(context.db, filter, since),
+    waitingFor(context.db, { id: actor.id, managed }, filter),
+  ]);
+  const sum = (name: Exclude<keyof Board['counts'], never>) => bySite.reduce((total, site) => total + site[name], 0);
+  return {
+    counts: {
+      total: sum('total'),
+      fit: sum('fit'),
+      watch: sum('watch'),
+      unfit: sum('unfit'),
+      unproven: sum('unproven'),
+      unfitInClosedLoop: sum('unfitInClosedLoop'),
+      notInService: sum('notInService'),
+    },
+    sites: bySite.map(({ siteId, name, zone, total }) => ({
+      siteId,
+      name,
+      zone,
+      total,
+      months: months
+        .filter((month) => month.siteId === siteId)
+        .map(({ month, unfit, unproven }) => ({ month, unfit, unproven })),
+    })),
+    rows,
+    waiting,
+    at: now.toISOString(),
+  };
+}

@@ -1,0 +1,18 @@
+import type { z } from 'zod';
+import type { chartSeries } from '../../../shared/contracts/judging.ts';
+import { bandAround } from '../../../shared/rules/judgement.ts';
+import type { Context } from '../../context.ts';
+import type { Permitted } from '../../http/rows.ts';
+import { findTag } from '../tags/repo.ts';
+import { tagSeries } from '../tags/service.ts';
+import { type SensorRow, approvedRevisions } from './repo.ts';
+
+type ChartSeries = z.input<typeof chartSeries>;
+
+/** The estimate for a chart with the band that should hold 95 % of true values, where its SD is known. */
+export async function estimateSeries(context: Context, sensor: SensorRow, from: Date, to: Date): Promise<ChartSeries> {
+  const tag = (await findTag(context.db, sensor.siteId, sensor.estimateTagId))!;
+  const series = await tagSeries(context, tag as Permitted<typeof tag>, from, to);
+  const sd = (await approvedRevisions(context.db, sensor.siteId, sensor.id)).at(-1)?.model.residualSd ?? null;
+  return { at: series.at, value: series.value, ...bandAround(series.value, sd) };
+}

@@ -1,0 +1,108 @@
+import type pg from 'pg';
+import { pairAt } from '../../../shared/numerics/pairing.ts';
+import type { Tx } from '../../db/client.ts';
+import { pairs } from '../../db/schema/index.ts';
+import { type RevisionRow, type SensorRow, approvedRevisions } from '../estimates/repo.ts';
+import { readSeries } from '../estimates/series.ts';
+import { type PairRow, type SampleRow, addPairs, retireOrphanPairs, samplesToPair, supersedePairs } from './repo.ts';
+
+type NewPair = typeof pairs.$inferInsert;
+
+/**
+ * Sets every sample that needs it beside the estimate of its moment: takenAt minus the transport delay. A pair is
+ * frozen; where inputs changed later a new pair supersedes it, and decisions keep the pairs they were made on.
+ */
+export async function pairSamples(
+  tx: Tx,
+  client: pg.PoolClient,
+  sensor: SensorRow,
+  dirtyFrom: Date | null,
+  now: Date,
+): Promise<void> {
+  await retireOrphanPairs(tx, sensor, now);
+  const found = await samplesToPair(tx, sensor, dirtyFrom);
+  if (found.length === 0) return;
+  const revisions = await approvedRevisions(tx, sensor.siteId, sensor.id);
+  const makePair = await pairMaker(client, sensor, revisions, found.map(({ sample }) => sample), now);
+  const made: NewPair[] = [];
+  const replaced: number[] = [];
+  for (const { sample, pair } of found) {
+    const next = makePair(sample);
+    if (pair && sameFigures(pair, next)) continue;
+    if (pair) replaced.push(pair.id);
+    made.push(next);
+  }
+  await supersedePairs(tx, sensor.siteId, replaced, now);
+  await addPairs(tx, made);
+}
+
+async function pairMaker(
+  client: pg.PoolClient,
+  sensor: SensorRow,
+  revisions: readonly RevisionRow[],
+  samples: readonly SampleRow[],
+  now: Date,
+): Promise<(sample: SampleRow) => NewPair> {
+  const times = samples.flatMap((sample) => (sample.takenAt ? [sample.takenAt.getTime() - sensor.transportDelayMs] : []));
+  const margin = holdLimitOf(revisions.at(-1)) + sensor.pairingWindowMs;
+  const series = await readSeries(
+    client,
+    { siteId: sensor.siteId, tagId: sensor.estimateTagId },
+    new Date(Math.min(...times, now.getTime()) - margin),
+    new Date(Math.max(...times, 0) + margin),
+  );
+  return (sample) => {
+    const takenMs = sample.takenAt?.getTime() ?? Date.parse(`${sample.takenOn}T12:00:00Z`);
+    const revision = revisionAt(revisions, takenMs);
+    const base = {
+      siteId: sensor.siteId,
+      softSensorId: sensor.id,
+      sampleId: sample.id,
+      revisionId: revision?.row.id ?? null,
+      takenAt: new Date(takenMs),
+      reportedAt: sample.reportedAt,
+      reference: sample.value,
+      origin: revision?.recorded ? ('recorded' as const) : ('replayed' as const),
+      computedAt: now,
+    };
+    if (sample.takenAt === null) return { ...base, notCounted: 'date-without-time' };
+    const paired = pairAt(series, takenMs - sensor.transportDelayMs, {
+      holdLimitMs: holdLimitOf(revision?.row),
+      windowMs: sensor.pairingWindowMs,
+    });
+    if (!paired.ok) return { ...base, notCounted: 'no-estimate' };
+    return {
+      ...base,
+      estimate: paired.estimate,
+      estimateSd: paired.sd,
+      spread: paired.spread,
+      error: paired.estimate - sample.value,
+      notCounted: whyNotCounted(sample),
+    };
+  };
+}
+
+function whyNotCounted(sample: SampleRow): string | null {
+  if (sample.qualifier !== null) return 'censored';
+  if (sample.heldSince !== null) return 'held';
+  return null;
+}
+
+const holdLimitOf = (revision: RevisionRow | undefined): number => revision?.model.holdLimitMs ?? 0;
+
+/** The revision in force at an instant; before the first one, the first, whose estimate there was computed afterwards. */
+function revisionAt(revisions: readonly RevisionRow[], atMs: number): { row: RevisionRow; recorded: boolean } | null {
+  const inForce = revisions.findLast((revision) => revision.effectiveFrom!.getTime() <= atMs);
+  if (inForce) return { row: inForce, recorded: true };
+  return revisions[0] ? { row: revisions[0], recorded: false } : null;
+}
+
+function sameFigures(old: PairRow, next: NewPair): boolean {
+  return (
+    old.estimate === (next.estimate ?? null) &&
+    old.reference === next.reference &&
+    old.notCounted === (next.notCounted ?? null) &&
+    old.revisionId === next.revisionId &&
+    old.takenAt.getTime() === (next.takenAt as Date).getTime()
+  );
+}
