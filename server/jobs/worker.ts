@@ -39,12 +39,11 @@ export async function startWorkers(context: Context): Promise<Workers> {
   );
   await life.connect();
   const events = new EventEmitter() as WorkerEvents;
-  events.on('worker:create', ({ worker }) => {
-    life
-      .query('select pg_advisory_lock($1, hashtext($2))', [lifeLock, worker.workerId])
-      .catch((error: unknown) => {
-        context.log.warn({ error }, 'a worker could not show that it lives');
-      });
+  // Jobs are locked in the name of the pool, so it is the pool that must be seen to live.
+  events.on('pool:create', ({ workerPool }) => {
+    life.query('select pg_advisory_lock($1, hashtext($2))', [lifeLock, workerPool.id]).catch((error: unknown) => {
+      context.log.warn({ error }, 'this worker could not show that it lives');
+    });
   });
   const runner: Runner = await run({
     pgPool: pool,
