@@ -6,7 +6,8 @@ import type { Origin } from '../server/http/request.ts';
 import type { Permitted } from '../server/http/rows.ts';
 import { demoPassword, demoPeople } from './company.ts';
 import { seedPeople } from './people.ts';
-import { demoSensors } from './plants.ts';
+import { ostranderAndKallaraSensors } from './ostrander-and-kallara.ts';
+import { tarnbySensors } from './tarnby.ts';
 import { type DemoActors, seedSoftSensor } from './soft-sensor.ts';
 
 const origin: Origin = { requestId: 'demo', fromAddress: '' };
@@ -15,7 +16,7 @@ const origin: Origin = { requestId: 'demo', fromAddress: '' };
 export async function seedDemo(context: Context): Promise<void> {
   const sites = await seedPeople(context);
   const actors = await demoActors(context);
-  for (const [index, sensor] of demoSensors.entries()) {
+  for (const [index, sensor] of [...tarnbySensors, ...ostranderAndKallaraSensors].entries()) {
     await seedSoftSensor(context, actors, sites.get(sensor.site) as Permitted<SiteRow>, sensor, 11 + index);
   }
 }

@@ -1,5 +1,6 @@
 import { and, eq, sql } from 'drizzle-orm';
-import type { Model, SheetFields } from '../shared/contracts/register.ts';
+import type { Model } from '../shared/contracts/models.ts';
+import type { SheetFields } from '../shared/contracts/register.ts';
 import type { Context } from '../server/context.ts';
 import { ensurePartitions } from '../server/db/partitions.ts';
 import {

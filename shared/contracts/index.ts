@@ -4,6 +4,7 @@ import type { EndpointSpec } from './endpoint.ts';
 import { history } from './history.ts';
 import { judging } from './judging.ts';
 import { mail } from './mail.ts';
+import { models } from './models.ts';
 import { people } from './people.ts';
 import { register } from './register.ts';
 import { runs } from './runs.ts';
@@ -20,6 +21,7 @@ export const endpoints = {
   ...history,
   ...samples,
   ...register,
+  ...models,
   ...judging,
   ...boards,
   ...mail,

@@ -5,7 +5,8 @@ import type { Actor, Origin } from '../../http/request.ts';
 export interface AuditNote {
   at: Date;
   siteId: number | null;
-  actor: Pick<Actor, 'id' | 'name'> | null;
+  /** Null for what Cupel does by itself; without an id where nobody is signed in. */
+  actor: { id: Actor['id'] | null; name: string } | null;
   origin: Origin;
   action:
     | 'add'
@@ -18,8 +19,10 @@ export interface AuditNote {
     | 'propose'
     | 'decide'
     | 'start'
+    | 'cancel'
     | 'sign-in'
     | 'sign-out'
+    | 'ask-for-link'
     | 'set-password';
   entity: string;
   entityId: number | string;

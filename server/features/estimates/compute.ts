@@ -1,6 +1,6 @@
 import { sql } from 'drizzle-orm';
 import type pg from 'pg';
-import type { RegressionModel } from '../../../shared/contracts/register.ts';
+import type { RegressionModel } from '../../../shared/contracts/models.ts';
 import { type Grid, gridWithin } from '../../../shared/numerics/grid.ts';
 import { type Db, type Tx, withClient } from '../../db/client.ts';
 import { ensurePartitions } from '../../db/partitions.ts';

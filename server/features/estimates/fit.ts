@@ -1,7 +1,7 @@
 import { and, eq } from 'drizzle-orm';
 import type pg from 'pg';
 import { AppError } from '../../../shared/contracts/errors.ts';
-import type { FitSummary, RegressionModel } from '../../../shared/contracts/register.ts';
+import type { FitSummary, RegressionModel } from '../../../shared/contracts/models.ts';
 import { gridWithin } from '../../../shared/numerics/grid.ts';
 import { fitLeastSquares } from '../../../shared/numerics/regression.ts';
 import { fitRefusalSentence } from '../../../shared/rules/fit-sentences.ts';

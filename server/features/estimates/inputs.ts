@@ -1,5 +1,5 @@
 import type pg from 'pg';
-import type { RegressionModel } from '../../../shared/contracts/register.ts';
+import type { RegressionModel } from '../../../shared/contracts/models.ts';
 import { regressionEstimator } from '../../../shared/numerics/estimator.ts';
 import { type Grid, type GridColumn, holdOnGrid } from '../../../shared/numerics/grid.ts';
 import { readSeries } from './series.ts';

@@ -2,7 +2,7 @@ import { eq } from 'drizzle-orm';
 import type pg from 'pg';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { PairedError, ReplayFigures } from '../../../shared/contracts/judging.ts';
-import type { Model } from '../../../shared/contracts/register.ts';
+import type { Model } from '../../../shared/contracts/models.ts';
 import { type Grid, type GridColumn, gridWithin } from '../../../shared/numerics/grid.ts';
 import { type EstimateSeries, pairAt } from '../../../shared/numerics/pairing.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';

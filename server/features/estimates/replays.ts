@@ -2,7 +2,7 @@ import { and, desc, eq, getTableColumns } from 'drizzle-orm';
 import type { z } from 'zod';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { judging, Replay } from '../../../shared/contracts/judging.ts';
-import type { Model } from '../../../shared/contracts/register.ts';
+import type { Model } from '../../../shared/contracts/models.ts';
 import type { Context } from '../../context.ts';
 import type { Db, Queryable } from '../../db/client.ts';
 import { methods, persons, replays, revisions, softSensors } from '../../db/schema/index.ts';

@@ -1,7 +1,7 @@
 import { sql } from 'drizzle-orm';
 import type pg from 'pg';
 import type { ErrorStripPoint, PairedError, Performance } from '../../../shared/contracts/judging.ts';
-import type { Model } from '../../../shared/contracts/register.ts';
+import type { Model } from '../../../shared/contracts/models.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
 import { wallClock } from '../../../shared/rules/format.ts';
 import {

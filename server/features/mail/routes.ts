@@ -2,6 +2,7 @@ import { simpleParser } from 'mailparser';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import { mail } from '../../../shared/contracts/mail.ts';
 import type { Context } from '../../context.ts';
+import type { Config } from '../../env.ts';
 import { routesOf } from '../../http/front-door.ts';
 import { toWire } from '../../http/wire.ts';
 import { findLocalMail, listMails } from './repo.ts';
@@ -10,7 +11,7 @@ export const mailRoutes = (context: Context) =>
   routesOf(context, mail, {
     'mail.list': async ({ query }) => {
       const { rows, total } = await listMails(context.db, query);
-      return { rows: toWire(rows), total, server: serverName(context.config.smtpUrl) };
+      return { rows: toWire(rows), total, server: serverName(context.config) };
     },
     'mail.read': async ({ params }) => {
       const found = await findLocalMail(context.db, params.localMailId);
@@ -27,7 +28,7 @@ export const mailRoutes = (context: Context) =>
     },
   });
 
-/** Host and port without user name and password. */
-function serverName(smtpUrl: string | undefined): string {
-  return smtpUrl ? new URL(smtpUrl).host : '';
+/** 'local', or host and port without user name and password. */
+function serverName({ localMail, smtpUrl }: Config): string {
+  return localMail || !smtpUrl ? 'local' : new URL(smtpUrl).host;
 }

@@ -1,8 +1,10 @@
 import { and, eq, ne } from 'drizzle-orm';
 import type { Context } from '../../context.ts';
+import type { Tx } from '../../db/client.ts';
 import { mails } from '../../db/schema/index.ts';
 import { type LinkFigures, linkLetter } from '../../mail/templates.ts';
 import { sendLetter } from '../../mail/transport.ts';
+import { findPerson } from '../people/repo.ts';
 import { makeLink } from '../people/sign-in.ts';
 
 type MailRow = typeof mails.$inferSelect;
@@ -16,6 +18,11 @@ export async function sendQueuedMail(context: Context, { mailId }: { mailId: num
       .where(and(eq(mails.id, mailId), ne(mails.state, 'sent')))
       .for('update', { skipLocked: true });
     if (!mail) return null;
+    const reason = await overtaken(tx, mail);
+    if (reason) {
+      await tx.update(mails).set({ state: 'failed', lastError: reason }).where(eq(mails.id, mailId));
+      return null;
+    }
     try {
       const body = await render(context, mail);
       await sendLetter(context.config, context.config.smtpUrl!, {
@@ -44,6 +51,14 @@ export async function sendQueuedMail(context: Context, { mailId }: { mailId: num
   });
   // Thrown after the commit, so that the queue tries again later and the row keeps what went wrong.
   if (failure) throw failure;
+}
+
+/** Why a waiting mail must no longer go out: a one-time link belongs to its person at the address they have now. */
+async function overtaken(tx: Tx, mail: MailRow): Promise<string | null> {
+  if (mail.personId === null) return null;
+  const person = await findPerson(tx, mail.personId);
+  if (!person || person.deactivatedAt) return 'Not sent: the person was deactivated meanwhile.';
+  return person.email === mail.toAddress ? null : 'Not sent: the person has another address now.';
 }
 
 async function render(context: Context, mail: MailRow) {

@@ -1,7 +1,7 @@
 import { and, asc, eq, gt, inArray, isNull, sql } from 'drizzle-orm';
 import type { Role } from '../../../shared/contracts/access.ts';
 import type { Queryable } from '../../db/client.ts';
-import { oneTimeLinks, persons, siteRoles } from '../../db/schema/index.ts';
+import { oneTimeLinks, persons, sessions, siteRoles, sites } from '../../db/schema/index.ts';
 import type { Actor } from '../../http/request.ts';
 
 export type PersonRow = typeof persons.$inferSelect;
@@ -115,18 +115,30 @@ export async function listPeopleAtSite(db: Queryable, siteId: number) {
     .orderBy(asc(persons.name));
 }
 
+/** Gives a person these roles instead of those held at open sites; what was held at an archived site stays. */
 export async function replaceRoles(
   db: Queryable,
   personId: number,
   roles: readonly { siteId: number; role: Role }[],
 ): Promise<void> {
-  await db.delete(siteRoles).where(eq(siteRoles.personId, personId));
+  const open = db.select({ id: sites.id }).from(sites).where(isNull(sites.archivedAt));
+  await db.delete(siteRoles).where(and(eq(siteRoles.personId, personId), inArray(siteRoles.siteId, open)));
   if (roles.length > 0) {
     await db
       .insert(siteRoles)
       .values(roles.map((held) => ({ personId, ...held })))
       .onConflictDoNothing();
   }
+}
+
+/** Sites at which a role can be given. */
+export async function openSiteIds(db: Queryable): Promise<Set<number>> {
+  const rows = await db.select({ id: sites.id }).from(sites).where(isNull(sites.archivedAt));
+  return new Set(rows.map((row) => row.id));
+}
+
+export async function endSessions(db: Queryable, personId: number): Promise<void> {
+  await db.delete(sessions).where(eq(sessions.userId, personId));
 }
 
 export async function namesOf(db: Queryable, ids: readonly number[]): Promise<Map<number, string>> {

@@ -15,8 +15,8 @@ export const peopleRoutes = (context: Context) =>
       await signOut(context, response, actor, origin);
       return done;
     },
-    'auth.askForLink': async ({ body }) => {
-      await askForLink(context, body.email);
+    'auth.askForLink': async ({ body, origin }) => {
+      await askForLink(context, body.email, origin);
       return done;
     },
     'auth.readLink': ({ body }) => readLink(context, body.token),

@@ -1,4 +1,4 @@
-import { and, eq, sql } from 'drizzle-orm';
+import { and, eq, isNotNull, isNull, ne, sql } from 'drizzle-orm';
 import type { z } from 'zod';
 import type { people, Person } from '../../../shared/contracts/people.ts';
 import { AppError } from '../../../shared/contracts/errors.ts';
@@ -9,7 +9,7 @@ import type { Actor, Origin } from '../../http/request.ts';
 import { toWire } from '../../http/wire.ts';
 import { stale } from '../../http/stale.ts';
 import { recordAudit } from '../audit/service.ts';
-import { addPerson, findPersonByEmail, listPeople, replaceRoles } from './repo.ts';
+import { addPerson, endSessions, findPersonByEmail, listPeople, replaceRoles, useUpLinks } from './repo.ts';
 import { queueLinkMail } from './sign-in.ts';
 
 type NewPerson = z.output<(typeof people)['people.add']['body']>;
@@ -32,6 +32,7 @@ export async function addNewPerson(
 ): Promise<Person> {
   return context.db.transaction(async (tx) => {
     await refuseTakenAddress(tx, body.email, null);
+    await refuseOtherSites(tx, body.roles);
     const person = await addPerson(tx, {
       name: body.name,
       email: body.email,
@@ -59,6 +60,7 @@ export async function changePerson(
     const before = await personNow(tx, personId);
     if (before.version !== body.version) throw stale('person', before);
     await refuseTakenAddress(tx, body.email, personId);
+    await refuseOtherSites(tx, body.roles);
     if (!body.administrator || body.deactivated) await refuseLastAdministrator(tx, personId);
     await tx
       .update(persons)
@@ -75,7 +77,9 @@ export async function changePerson(
       })
       .where(eq(persons.id, personId));
     await replaceRoles(tx, personId, body.roles);
-    if (body.deactivated) await tx.execute(sql`delete from sessions where person_id = ${personId}`);
+    if (body.deactivated) await endSessions(tx, personId);
+    // A link that is out would still let in whoever reads the old address.
+    if (body.deactivated || body.email !== before.email) await useUpLinks(tx, personId, context.clock());
     const now = await personNow(tx, personId);
     await note(context, tx, actor, origin, 'change', before, now);
     return now;
@@ -105,17 +109,27 @@ async function refuseTakenAddress(tx: Tx, email: string, exceptId: number | null
   throw new AppError('invalid-input', message, { fields: [{ path: 'email', message }] });
 }
 
+async function refuseOtherSites(tx: Tx, roles: NewPerson['roles']): Promise<void> {
+  const open = await openSiteIds(tx);
+  if (roles.every(({ siteId }) => open.has(siteId))) return;
+  const message = 'A role was given at a site that is archived or not there. Load the page again.';
+  throw new AppError('invalid-input', message, { fields: [{ path: 'roles', message }] });
+}
+
+/** Whoever never set a password can't be counted on to let anybody in again. */
 async function refuseLastAdministrator(tx: Tx, personId: number): Promise<void> {
   const others = await tx.$count(
     persons,
     and(
       eq(persons.administrator, true),
-      sql`${persons.deactivatedAt} is null`,
-      sql`${persons.id} <> ${personId}`,
+      isNull(persons.deactivatedAt),
+      isNotNull(persons.passwordHash),
+      ne(persons.id, personId),
     ),
   );
   if (others > 0) return;
-  const message = 'This is the last administrator. Make somebody else an administrator first.';
+  const message =
+    'This is the last administrator who can sign in. Make somebody else an administrator first, and let them set a password.';
   throw new AppError('invalid-input', message, { fields: [{ path: 'administrator', message }] });
 }
 

@@ -2,7 +2,7 @@ import type { Response } from 'express';
 import type { Self } from '../../../shared/contracts/people.ts';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import { passwordMatches, hashPassword } from '../../auth/password.ts';
-import type { Sessions } from '../../auth/sessions.ts';
+import { type Sessions, createSessions } from '../../auth/sessions.ts';
 import { hashToken, newToken } from '../../auth/token.ts';
 import type { Context } from '../../context.ts';
 import type { Queryable, Tx } from '../../db/client.ts';
@@ -14,6 +14,7 @@ import {
   addLink,
   addPerson,
   anyAdministrator,
+  endSessions,
   findActor,
   findLink,
   findPerson,
@@ -51,30 +52,27 @@ export async function signIn(
       ],
     });
   }
-  return openSession(context, response, person.id, origin);
+  return context.db.transaction((tx) => openSession(context, tx, response, person.id, origin));
 }
 
+const sessionsIn = (context: Context, tx: Tx): Sessions =>
+  createSessions(tx, context.config.publicUrl.startsWith('https:'));
+
+/** Opens a new session; the one that the browser had, if any, ends. */
 async function openSession(
   context: Context,
+  tx: Tx,
   response: Response,
   personId: number,
   origin: Origin,
 ): Promise<Self> {
-  const sessions = response.locals.sessions as Sessions;
-  const actor = (await findActor(context.db, personId))!;
+  const sessions = sessionsIn(context, tx);
+  const before = response.locals.sessionId as string | undefined;
+  if (before) await sessions.invalidateSession(before);
+  const actor = await findActor(tx, personId);
+  if (!actor) throw new AppError('not-signed-in', 'This person was deactivated a moment ago.');
   const session = await sessions.createSession(personId, {});
-  await context.db.transaction((tx) =>
-    recordAudit(tx, {
-      at: context.clock(),
-      siteId: null,
-      actor,
-      origin,
-      action: 'sign-in',
-      entity: 'person',
-      entityId: personId,
-      entityName: actor.name,
-    }),
-  );
+  await note(context, tx, actor, origin, 'sign-in', actor);
   setCookie(response, sessions.createSessionCookie(session.id).serialize());
   return toSelf(actor);
 }
@@ -85,22 +83,14 @@ export async function signOut(
   actor: Actor | null,
   origin: Origin,
 ): Promise<void> {
-  const sessions = response.locals.sessions as Sessions;
-  if (response.locals.sessionId) {
-    await sessions.invalidateSession(response.locals.sessionId as string);
-    await context.db.transaction((tx) =>
-      recordAudit(tx, {
-        at: context.clock(),
-        siteId: null,
-        actor,
-        origin,
-        action: 'sign-out',
-        entity: 'person',
-        entityId: actor?.id ?? 0,
-        entityName: actor?.name ?? '',
-      }),
-    );
+  const id = response.locals.sessionId as string | undefined;
+  if (id && actor) {
+    await context.db.transaction(async (tx) => {
+      await sessionsIn(context, tx).invalidateSession(id);
+      await note(context, tx, actor, origin, 'sign-out', actor);
+    });
   }
+  const sessions = response.locals.sessions as Sessions;
   setCookie(response, sessions.createBlankSessionCookie().serialize());
 }
 
@@ -125,11 +115,13 @@ export async function makeLink(
 }
 
 /** Queues a mail with a link if the address is known; says nothing either way. */
-export async function askForLink(context: Context, address: string): Promise<void> {
+export async function askForLink(context: Context, address: string, origin: Origin): Promise<void> {
   await context.db.transaction(async (tx) => {
     const person = await findPersonByEmail(tx, address);
     if (!person || person.deactivatedAt) return;
     await queueLinkMail(context, tx, person, person.passwordHash ? 'reset-password' : 'set-password');
+    const nobody = { id: null, name: 'Somebody not signed in' };
+    await note(context, tx, nobody, origin, 'ask-for-link', person);
   });
 }
 
@@ -163,7 +155,7 @@ export async function useLink(
   origin: Origin,
 ): Promise<Self> {
   const passwordHash = await hashPassword(given.password);
-  const personId = await context.db.transaction(async (tx) => {
+  return context.db.transaction(async (tx) => {
     const now = context.clock();
     const link = await findLink(tx, hashToken(given.token), now, true);
     if (!link) throw linkGone();
@@ -172,20 +164,10 @@ export async function useLink(
     if (person.deactivatedAt) throw linkGone();
     await setPassword(tx, id, passwordHash);
     await useUpLinks(tx, link.personId, now);
-    await recordAudit(tx, {
-      at: now,
-      siteId: null,
-      actor: person,
-      origin,
-      action: 'set-password',
-      entity: 'person',
-      entityId: id,
-      entityName: person.name,
-    });
-    return id;
+    await note(context, tx, person, origin, 'set-password', person);
+    await endSessions(tx, id);
+    return openSession(context, tx, response, id, origin);
   });
-  await (response.locals.sessions as Sessions).invalidateUserSessions(personId);
-  return openSession(context, response, personId, origin);
 }
 
 async function addFirstAdministrator(tx: Tx, given: { name?: string; email?: string }): Promise<number> {
@@ -198,4 +180,24 @@ async function addFirstAdministrator(tx: Tx, given: { name?: string; email?: str
     throw new AppError('invalid-input', 'Name and e-mail address are missing.', { fields });
   const person = await addPerson(tx, { name: given.name!, email: given.email!, administrator: true });
   return person.id;
+}
+
+async function note(
+  context: Context,
+  tx: Tx,
+  actor: { id: number | null; name: string },
+  origin: Origin,
+  action: 'sign-in' | 'sign-out' | 'ask-for-link' | 'set-password',
+  person: Pick<Actor, 'id' | 'name'>,
+): Promise<void> {
+  await recordAudit(tx, {
+    at: context.clock(),
+    siteId: null,
+    actor,
+    origin,
+    action,
+    entity: 'person',
+    entityId: person.id,
+    entityName: person.name,
+  });
 }

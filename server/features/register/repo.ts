@@ -102,7 +102,10 @@ export async function surroundings(db: Queryable, sensor: SensorRow) {
     .leftJoin(owner, eq(owner.id, ownerships.ownerId))
     .leftJoin(deputy, eq(deputy.id, ownerships.deputyId))
     .leftJoin(approver, eq(approver.id, ownerships.approverId))
-    .leftJoin(samplePoints, and(eq(samplePoints.siteId, softSensors.siteId), eq(samplePoints.id, softSensors.samplePointId)))
+    .leftJoin(
+      samplePoints,
+      and(eq(samplePoints.siteId, softSensors.siteId), eq(samplePoints.id, softSensors.samplePointId)),
+    )
     .leftJoin(methods, and(eq(methods.siteId, softSensors.siteId), eq(methods.id, softSensors.methodId)))
     .where(and(eq(softSensors.siteId, sensor.siteId), eq(softSensors.id, sensor.id)));
   return row!;

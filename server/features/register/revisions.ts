@@ -1,6 +1,6 @@
 import { eq } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
-import type { Draft, Model, Revision, Sheet } from '../../../shared/contracts/register.ts';
+import type { Draft, Model, Revision } from '../../../shared/contracts/models.ts';
 import type { Run } from '../../../shared/contracts/runs.ts';
 import { type DecisionRefusal, mayDecide } from '../../../shared/rules/permissions.ts';
 import type { Context } from '../../context.ts';
@@ -11,14 +11,21 @@ import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
 import { toWire } from '../../http/wire.ts';
 import { addJob } from '../../jobs/queue.ts';
-import { recordAudit } from '../audit/service.ts';
-import { type RevisionRow, type SensorRow, approvedRevisions, findDraft, findSensor, tagNames } from '../estimates/repo.ts';
+import {
+  type RevisionRow,
+  type SensorRow,
+  approvedRevisions,
+  findDraft,
+  findSensor,
+} from '../estimates/repo.ts';
 import { markSensorDirty } from '../estimates/work.ts';
 import { lifeNow } from '../judging/repo.ts';
 import { addRun } from '../runs/repo.ts';
+import { refuseWrongInputs } from './model-inputs.ts';
+import { note } from './note.ts';
 import { currentOwnership, listRevisions } from './repo.ts';
 import type { By } from './service.ts';
-import { draftOf, readSheet, toRevision } from './sheet.ts';
+import { draftOf, toRevision } from './sheet.ts';
 
 /** Saves the draft of a model; two engineers on the same draft get both sides. */
 export async function saveDraft(
@@ -47,27 +54,21 @@ export async function saveDraft(
         .set({ ...values, version: before.version + 1 })
         .where(eq(drafts.id, before.id));
     } else await tx.insert(drafts).values({ ...values, siteId: sensor.siteId, softSensorId: sensor.id });
-    await note(context, tx, by, sensor, before ? 'change' : 'add', 'draft', before?.model ?? null, body.model);
+    await note(
+      context,
+      tx,
+      by,
+      sensor,
+      before ? 'change' : 'add',
+      'draft',
+      before?.model ?? null,
+      body.model,
+    );
     return (await draftOf(tx, sensor.siteId, sensor.id))!;
   });
 }
 
 const sameModel = (a: Model, b: Model): boolean => JSON.stringify(a) === JSON.stringify(b);
-
-async function refuseWrongInputs(tx: Tx, sensor: SensorRow, model: Model): Promise<void> {
-  if (model.form !== 'regression') return;
-  const known = await tagNames(tx, sensor.siteId, model.terms.map((term) => term.tagId));
-  const fields = model.terms.flatMap(({ tagId }, index) => {
-    const path = `model.terms.${index}.tagId`;
-    if (!known.has(tagId)) return [{ path, message: 'This tag is not one of the site. Choose another.' }];
-    if (tagId === sensor.estimateTagId) return [{ path, message: 'An estimate can’t be its own input. Choose another tag.' }];
-    if (model.terms.findIndex((term) => term.tagId === tagId) < index) {
-      return [{ path, message: `${known.get(tagId)!.name} is an input already. Leave it out here.` }];
-    }
-    return [];
-  });
-  if (fields.length > 0) throw invalidInput(fields);
-}
 
 /** Queues a least-squares fit of the draft on the samples of a period. */
 export async function startFit(
@@ -78,8 +79,10 @@ export async function startFit(
 ): Promise<Run> {
   return context.db.transaction(async (tx) => {
     const draft = await findDraft(tx, sensor.siteId, sensor.id);
-    if (!draft || draft.version !== body.version) throw stale('draft', { ...(await draftOf(tx, sensor.siteId, sensor.id)) });
-    if (draft.model.form !== 'regression') throw new AppError('conflict', 'Only a regression is fitted. Choose that form first.');
+    if (!draft || draft.version !== body.version)
+      throw stale('draft', { ...(await draftOf(tx, sensor.siteId, sensor.id)) });
+    if (draft.model.form !== 'regression')
+      throw new AppError('conflict', 'Only a regression is fitted. Choose that form first.');
     if (Date.parse(body.from) >= Date.parse(body.to)) {
       throw invalidInput([{ path: 'to', message: 'The end must be after the beginning.' }]);
     }
@@ -106,11 +109,15 @@ export async function proposeRevision(
   return context.db.transaction(async (tx) => {
     const sensor = await lockRow(tx, 'softSensor', row);
     const draft = await findDraft(tx, sensor.siteId, sensor.id);
-    if (!draft || draft.version !== body.version) throw stale('draft', { ...(await draftOf(tx, sensor.siteId, sensor.id)) });
+    if (!draft || draft.version !== body.version)
+      throw stale('draft', { ...(await draftOf(tx, sensor.siteId, sensor.id)) });
     const all = await listRevisions(tx, sensor.siteId, sensor.id);
     const waiting = all.find(({ revision }) => revision.decision === null);
     if (waiting) {
-      throw new AppError('conflict', `Revision ${waiting.revision.number} waits for approval already. Withdraw it first, or wait for the decision.`);
+      throw new AppError(
+        'conflict',
+        `Revision ${waiting.revision.number} waits for approval already. Withdraw it first, or wait for the decision.`,
+      );
     }
     const [made] = await tx
       .insert(revisions)
@@ -127,7 +134,10 @@ export async function proposeRevision(
         editedBy: [draft.updatedBy],
       })
       .returning();
-    await note(context, tx, by, sensor, 'propose', 'revision', null, { number: made!.number, reason: body.reason });
+    await note(context, tx, by, sensor, 'propose', 'revision', null, {
+      number: made!.number,
+      reason: body.reason,
+    });
     return oneRevision(tx, made!);
   });
 }
@@ -137,8 +147,10 @@ async function oneRevision(tx: Tx, revision: RevisionRow): Promise<Revision> {
 }
 
 const refusals: Record<DecisionRefusal, string> = {
-  'own-proposal': 'You proposed this revision, so somebody else decides: the named approver or a manager of the site.',
-  'own-edit': 'You worked on this revision, so somebody else decides: the named approver or a manager of the site.',
+  'own-proposal':
+    'You proposed this revision, so somebody else decides: the named approver or a manager of the site.',
+  'own-edit':
+    'You worked on this revision, so somebody else decides: the named approver or a manager of the site.',
   'not-approver': 'Only the named approver or a manager of the site decides.',
 };
 
@@ -155,7 +167,8 @@ export async function decideRevision(
     const ownership = await currentOwnership(tx, revision.siteId, revision.softSensorId);
     const refusal = mayDecide(by.actor, { ...revision, approverId: ownership?.approverId ?? null });
     if (refusal) throw new AppError('forbidden', refusals[refusal]);
-    if (revision.decision !== null) throw new AppError('conflict', `Revision ${revision.number} was ${revision.decision} already.`);
+    if (revision.decision !== null)
+      throw new AppError('conflict', `Revision ${revision.number} was ${revision.decision} already.`);
     const now = context.clock();
     const approved = body.decision === 'approved';
     const first = (await approvedRevisions(tx, revision.siteId, revision.softSensorId)).length === 0;
@@ -170,7 +183,17 @@ export async function decideRevision(
       })
       .where(eq(revisions.id, revision.id));
     if (approved) await putIntoForce(tx, by, sensor, first, now);
-    await note(context, tx, by, sensor, 'decide', 'revision', null, { number: revision.number, ...body }, body.reason);
+    await note(
+      context,
+      tx,
+      by,
+      sensor,
+      'decide',
+      'revision',
+      null,
+      { number: revision.number, ...body },
+      body.reason,
+    );
     return oneRevision(tx, revision);
   });
 }
@@ -190,80 +213,24 @@ async function putIntoForce(tx: Tx, by: By, sensor: SensorRow, first: boolean, n
   await markSensorDirty(tx, sensor.siteId, sensor.id, first ? new Date(0) : now);
 }
 
-export async function withdrawRevision(context: Context, by: By, row: Permitted<RevisionRow>): Promise<Revision> {
+export async function withdrawRevision(
+  context: Context,
+  by: By,
+  row: Permitted<RevisionRow>,
+): Promise<Revision> {
   return context.db.transaction(async (tx) => {
     const revision = await lockRow(tx, 'revision', row);
-    if (revision.decision !== null) throw new AppError('conflict', `Revision ${revision.number} was ${revision.decision} already.`);
+    if (revision.decision !== null)
+      throw new AppError('conflict', `Revision ${revision.number} was ${revision.decision} already.`);
     const sensor = (await findSensor(tx, revision.siteId, revision.softSensorId))!;
     await tx
       .update(revisions)
       .set({ decision: 'withdrawn', decidedAt: context.clock(), decidedBy: by.actor.id })
       .where(eq(revisions.id, revision.id));
-    await note(context, tx, by, sensor, 'change', 'revision', null, { number: revision.number, decision: 'withdrawn' });
+    await note(context, tx, by, sensor, 'change', 'revision', null, {
+      number: revision.number,
+      decision: 'withdrawn',
+    });
     return oneRevision(tx, revision);
-  });
-}
-
-/** Suspends a soft sensor at once; a reason may follow later. */
-export async function suspend(context: Context, by: By, row: Permitted<SensorRow>, reason: string): Promise<Sheet> {
-  return changeLife(context, by, row, 'suspended', reason, (state) =>
-    state === 'in-service' ? null : 'Only a soft sensor in service can be suspended.',
-  );
-}
-
-/** Puts a suspended soft sensor back in service. */
-export async function putBack(context: Context, by: By, row: Permitted<SensorRow>): Promise<Sheet> {
-  const ownership = await currentOwnership(context.db, row.siteId, row.id);
-  const nobody = { siteId: row.siteId, approverId: ownership?.approverId ?? null, proposedBy: 0, editedBy: [] };
-  if (mayDecide(by.actor, nobody)) {
-    throw new AppError('forbidden', 'Only the named approver or a manager of the site puts a soft sensor back in service.');
-  }
-  return changeLife(context, by, row, 'in-service', '', (state) =>
-    state === 'suspended' ? null : 'This soft sensor is not suspended.',
-  );
-}
-
-async function changeLife(
-  context: Context,
-  by: By,
-  row: Permitted<SensorRow>,
-  state: 'suspended' | 'in-service',
-  reason: string,
-  refusal: (state: string | undefined) => string | null,
-): Promise<Sheet> {
-  return context.db.transaction(async (tx) => {
-    const sensor = await lockRow(tx, 'softSensor', row);
-    const before = await lifeNow(tx, row.siteId, row.id);
-    const refused = refusal(before?.state);
-    if (refused) throw new AppError('conflict', refused);
-    const key = { siteId: row.siteId, softSensorId: row.id, recordedBy: by.actor.id };
-    await tx.insert(lifeStates).values({ ...key, state, reason, effectiveFrom: context.clock() });
-    await note(context, tx, by, sensor, 'change', 'softSensor', { life: before?.state }, { life: state }, reason);
-    return readSheet(tx, sensor);
-  });
-}
-
-async function note(
-  context: Context,
-  tx: Tx,
-  by: By,
-  sensor: SensorRow,
-  action: 'add' | 'change' | 'start' | 'propose' | 'decide',
-  part: string,
-  before: Record<string, unknown> | null,
-  after: Record<string, unknown>,
-  reason = '',
-): Promise<void> {
-  await recordAudit(tx, {
-    at: context.clock(),
-    siteId: sensor.siteId,
-    ...by,
-    action,
-    entity: 'softSensor',
-    entityId: sensor.id,
-    entityName: part === 'softSensor' ? sensor.tagName : `${sensor.tagName}, ${part}`,
-    before,
-    after,
-    reason,
   });
 }

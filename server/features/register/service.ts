@@ -8,13 +8,13 @@ import type { Actor, Origin } from '../../http/request.ts';
 import { invalidInput } from '../../http/parse.ts';
 import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
-import { recordAudit } from '../audit/service.ts';
 import type { SensorRow } from '../estimates/repo.ts';
 import { markSensorDirty } from '../estimates/work.ts';
 import { queueJudging } from '../judging/changed.ts';
 import { listPeopleAtSite } from '../people/repo.ts';
 import { type SiteRow, getUnit } from '../sites/repo.ts';
 import { tagsByName } from '../tags/repo.ts';
+import { note } from './note.ts';
 import { currentOwnership } from './repo.ts';
 import { fieldsOf, peopleOf, readSheet } from './sheet.ts';
 
@@ -42,7 +42,7 @@ export async function registerSensor(
     const key = { siteId: site.id, softSensorId: sensor!.id, effectiveFrom: now, recordedBy: by.actor.id };
     await tx.insert(ownerships).values({ ...key, ownerId, deputyId, approverId });
     await tx.insert(lifeStates).values({ ...key, state: 'draft' });
-    await note(context, tx, by, sensor!, 'add', null, { ...fields });
+    await note(context, tx, by, sensor!, 'add', 'softSensor', null, { ...fields });
     return readSheet(tx, sensor!);
   });
 }
@@ -98,7 +98,7 @@ export async function changeSensor(
       });
     }
     await followUp(tx, sensor, after!);
-    await note(context, tx, by, after!, 'change', before, { ...body.fields });
+    await note(context, tx, by, after!, 'change', 'softSensor', before, { ...body.fields });
     return readSheet(tx, after!);
   });
 }
@@ -112,13 +112,22 @@ async function followUp(tx: Tx, before: SensorRow, after: SensorRow): Promise<vo
   } else await queueJudging(tx, after.siteId, after.id);
 }
 
-async function refuseWrongFields(tx: Tx, siteId: number, fields: SheetFields, own: SensorRow | null): Promise<void> {
+async function refuseWrongFields(
+  tx: Tx,
+  siteId: number,
+  fields: SheetFields,
+  own: SensorRow | null,
+): Promise<void> {
   const problems: FieldProblem[] = [];
   const say = (path: keyof SheetFields, message: string) => problems.push({ path, message });
-  if (!(await getUnit(tx, siteId, fields.unitId))) say('unitId', 'This unit is not one of the site. Choose another.');
+  if (!(await getUnit(tx, siteId, fields.unitId)))
+    say('unitId', 'This unit is not one of the site. Choose another.');
   const taken = (await tagsByName(tx, siteId)).get(fields.tagName.toLowerCase());
   if (taken && taken.id !== own?.estimateTagId) {
-    say('tagName', `There is a tag ${taken.name} at this site already. Choose another, such as ${taken.name}-EST.`);
+    say(
+      'tagName',
+      `There is a tag ${taken.name} at this site already. Choose another, such as ${taken.name}-EST.`,
+    );
   }
   if (fields.samplePointId !== null && !(await atSite(tx, samplePoints, siteId, fields.samplePointId))) {
     say('samplePointId', 'This sample point is not one of the site. Choose another.');
@@ -127,7 +136,10 @@ async function refuseWrongFields(tx: Tx, siteId: number, fields: SheetFields, ow
     say('methodId', 'This method is not one of the site. Choose another.');
   }
   await checkPeople(tx, siteId, fields, say);
-  if (problems.length > 0) throw invalidInput(problems.map(({ path, message }) => ({ path: own ? `fields.${path}` : path, message })));
+  if (problems.length > 0)
+    throw invalidInput(
+      problems.map(({ path, message }) => ({ path: own ? `fields.${path}` : path, message })),
+    );
 }
 
 async function atSite(
@@ -148,29 +160,7 @@ async function checkPeople(
   const people = new Map((await listPeopleAtSite(tx, siteId)).map((person) => [person.id, person]));
   for (const path of ['ownerId', 'deputyId', 'approverId'] as const) {
     const id = fields[path];
-    if (id !== null && !people.has(id)) say(path, 'This person has no role at the site. Choose somebody who has.');
+    if (id !== null && !people.has(id))
+      say(path, 'This person has no role at the site. Choose somebody who has.');
   }
 }
-
-async function note(
-  context: Context,
-  tx: Tx,
-  by: By,
-  sensor: SensorRow,
-  action: 'add' | 'change',
-  before: Record<string, unknown> | null,
-  after: Record<string, unknown>,
-): Promise<void> {
-  await recordAudit(tx, {
-    at: context.clock(),
-    siteId: sensor.siteId,
-    ...by,
-    action,
-    entity: 'softSensor',
-    entityId: sensor.id,
-    entityName: sensor.tagName,
-    before,
-    after,
-  });
-}
-

@@ -1,4 +1,5 @@
-import type { Draft, Revision, Sheet, SheetFields, Status } from '../../../shared/contracts/register.ts';
+import type { Draft, Revision } from '../../../shared/contracts/models.ts';
+import type { Sheet, SheetFields, Status } from '../../../shared/contracts/register.ts';
 import type { Queryable } from '../../db/client.ts';
 import { toWire } from '../../http/wire.ts';
 import { type SensorRow, tagNames } from '../estimates/repo.ts';
@@ -65,7 +66,9 @@ export const peopleOf = (ownership: Awaited<ReturnType<typeof currentOwnership>>
 });
 
 async function inputsOf(db: Queryable, sensor: SensorRow, models: (Revision['model'] | undefined)[]) {
-  const ids = models.flatMap((model) => (model?.form === 'regression' ? model.terms.map((term) => term.tagId) : []));
+  const ids = models.flatMap((model) =>
+    model?.form === 'regression' ? model.terms.map((term) => term.tagId) : [],
+  );
   const names = await tagNames(db, sensor.siteId, [...new Set(ids)]);
   return [...names.values()].map(({ id, ...tag }) => ({ tagId: id, ...tag }));
 }

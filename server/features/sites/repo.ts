@@ -55,10 +55,16 @@ export async function getUnit(db: Queryable, siteId: number, id: number) {
   return row!;
 }
 
-export async function findArea(db: Queryable, siteId: number, id: number): Promise<AreaRow | null> {
-  const [row] = await db
+export async function findArea(
+  db: Queryable,
+  siteId: number,
+  id: number,
+  lock?: 'locked',
+): Promise<AreaRow | null> {
+  const query = db
     .select()
     .from(areas)
     .where(and(eq(areas.siteId, siteId), eq(areas.id, id)));
+  const [row] = lock ? await query.for('share') : await query;
   return row ?? null;
 }

@@ -1,6 +1,7 @@
-import { eq } from 'drizzle-orm';
+import { and, eq, isNull } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { Area, Site, Unit } from '../../../shared/contracts/sites.ts';
+import { plural } from '../../../shared/rules/format.ts';
 import type { Context } from '../../context.ts';
 import type { Tx } from '../../db/client.ts';
 import { areas, sites, units } from '../../db/schema/index.ts';
@@ -80,6 +81,7 @@ export async function changeArea(
   return context.db.transaction(async (tx) => {
     const before = await lockRow(tx, 'area', row);
     if (before.version !== body.version) throw stale('area', toWire({ ...before }));
+    if (body.archived && !before.archivedAt) await refuseWithUnits(tx, before);
     const [after] = await tx
       .update(areas)
       .set({
@@ -101,7 +103,7 @@ export async function addUnit(
   body: { name: string; areaId: number },
 ): Promise<Unit> {
   return context.db.transaction(async (tx) => {
-    await refuseForeignArea(tx, site.id, body.areaId);
+    await refuseArea(tx, site.id, body.areaId);
     const [made] = await tx
       .insert(units)
       .values({ siteId: site.id, ...body })
@@ -122,7 +124,7 @@ export async function changeUnit(
     const locked = await lockRow(tx, 'unit', row);
     const before = await getUnit(tx, row.siteId, row.id);
     if (locked.version !== body.version) throw stale('unit', toWire(before));
-    await refuseForeignArea(tx, row.siteId, body.areaId);
+    if (!body.archived || body.areaId !== locked.areaId) await refuseArea(tx, row.siteId, body.areaId);
     await tx
       .update(units)
       .set({
@@ -138,10 +140,22 @@ export async function changeUnit(
   });
 }
 
-async function refuseForeignArea(tx: Tx, siteId: number, areaId: number): Promise<void> {
-  if (await findArea(tx, siteId, areaId)) return;
-  const message = 'This area is not one of the site. Choose another.';
+/** Locks the area, so that it isn't archived at the same moment. */
+async function refuseArea(tx: Tx, siteId: number, areaId: number): Promise<void> {
+  const area = await findArea(tx, siteId, areaId, 'locked');
+  if (area && !area.archivedAt) return;
+  const message = area
+    ? `The area ${area.name} is archived. Take it back first, or choose another.`
+    : 'This area is not one of the site. Choose another.';
   throw new AppError('invalid-input', message, { fields: [{ path: 'areaId', message }] });
+}
+
+async function refuseWithUnits(tx: Tx, area: AreaRow): Promise<void> {
+  const open = and(eq(units.siteId, area.siteId), eq(units.areaId, area.id), isNull(units.archivedAt));
+  const count = await tx.$count(units, open);
+  if (count === 0) return;
+  const message = `${area.name} still has ${plural(count, 'unit')}. Move or archive ${count === 1 ? 'it' : 'them'} first.`;
+  throw new AppError('conflict', message, { fields: [{ path: 'archived', message }] });
 }
 
 async function note(

@@ -4,7 +4,11 @@ import { readingHours, readings, tagSpans, tags, units } from '../../db/schema/i
 
 export type TagRow = typeof tags.$inferSelect;
 
-export async function listTags(db: Queryable, siteId: number, only: { unitId?: number; tagId?: number } = {}) {
+export async function listTags(
+  db: Queryable,
+  siteId: number,
+  only: { unitId?: number; tagId?: number } = {},
+) {
   return db
     .select({
       id: tags.id,
@@ -37,7 +41,13 @@ export async function listTags(db: Queryable, siteId: number, only: { unitId?: n
     .orderBy(asc(tags.name));
 }
 
-export async function countReadings(db: Queryable, key: TagKey, from: Date, to: Date, atMost: number): Promise<number> {
+export async function countReadings(
+  db: Queryable,
+  key: TagKey,
+  from: Date,
+  to: Date,
+  atMost: number,
+): Promise<number> {
   const some = db
     .select({ at: readings.at })
     .from(readings)
@@ -54,7 +64,12 @@ interface TagKey {
 }
 
 const inPeriod = (key: TagKey, from: Date, to: Date) =>
-  and(eq(readings.siteId, key.siteId), eq(readings.tagId, key.tagId), gte(readings.at, from), lte(readings.at, to));
+  and(
+    eq(readings.siteId, key.siteId),
+    eq(readings.tagId, key.tagId),
+    gte(readings.at, from),
+    lte(readings.at, to),
+  );
 
 export async function listReadings(db: Queryable, key: TagKey, from: Date, to: Date) {
   return db
@@ -71,7 +86,9 @@ export async function listHours(db: Queryable, key: TagKey, from: Date, to: Date
   return db
     .select({
       seconds: bucket.mapWith(Number).as('seconds'),
-      mean: sql<number | null>`sum(${readingHours.mean} * (${readingHours.readings} - ${readingHours.bad})) / nullif(sum(case when ${readingHours.mean} is null then 0 else ${readingHours.readings} - ${readingHours.bad} end), 0)`,
+      mean: sql<
+        number | null
+      >`sum(${readingHours.mean} * (${readingHours.readings} - ${readingHours.bad})) / nullif(sum(case when ${readingHours.mean} is null then 0 else ${readingHours.readings} - ${readingHours.bad} end), 0)`,
       low: sql<number | null>`min(${readingHours.low})`,
       high: sql<number | null>`max(${readingHours.high})`,
     })
@@ -102,7 +119,13 @@ export async function findTag(db: Queryable, siteId: number, id: number): Promis
   return row ?? null;
 }
 
-export async function removeReadings(db: Queryable, key: TagKey, from: Date, to: Date): Promise<number> {
-  const removed = await db.delete(readings).where(inPeriod(key, from, to));
-  return removed.rowCount ?? 0;
+/** Removes readings; null where there were none, else how many and over which period they lay. */
+export async function removeReadings(db: Queryable, key: TagKey, from: Date, to: Date) {
+  const gone = await db.execute<{ removed: number; first: Date; last: Date }>(sql`
+    with gone as (delete from ${readings} where ${inPeriod(key, from, to)} returning at)
+    select count(*)::int as removed, min(at) as first, max(at) as last from gone`);
+  const row = gone.rows[0]!;
+  return row.removed === 0
+    ? null
+    : { removed: row.removed, first: new Date(row.first), last: new Date(row.last) };
 }

@@ -13,7 +13,16 @@ import { recordAudit } from '../audit/service.ts';
 import { readingsChanged } from '../history/changed.ts';
 import { getUnit, type SiteRow } from '../sites/repo.ts';
 import { archivedAt } from '../sites/service.ts';
-import { type TagRow, countReadings, listHours, listReadings, listTags, removeReadings, tagsByName } from './repo.ts';
+import {
+  type TagRow,
+  countReadings,
+  listHours,
+  listReadings,
+  listTags,
+  removeReadings,
+  tagsByName,
+} from './repo.ts';
+import { refreshSpan } from './spans.ts';
 
 type TagBody = z.output<typeof tagFields>;
 interface By {
@@ -24,7 +33,12 @@ interface By {
 const mostPoints = 3000;
 const bad = 2;
 
-export async function addTags(context: Context, by: By, site: Permitted<SiteRow>, bodies: TagBody[]): Promise<Tag[]> {
+export async function addTags(
+  context: Context,
+  by: By,
+  site: Permitted<SiteRow>,
+  bodies: TagBody[],
+): Promise<Tag[]> {
   return context.db.transaction(async (tx) => {
     const known = await tagsByName(tx, site.id);
     const fields = bodies.flatMap((body, index) => {
@@ -33,7 +47,8 @@ export async function addTags(context: Context, by: By, site: Permitted<SiteRow>
       return [{ path: `tags.${index}.name`, message: `There is a tag ${body.name} at this site already.` }];
     });
     if (fields.length > 0) throw new AppError('invalid-input', fields[0]!.message, { fields });
-    for (const [index, body] of bodies.entries()) await refuseForeignUnit(tx, site.id, body.unitId, `tags.${index}.unitId`);
+    for (const [index, body] of bodies.entries())
+      await refuseForeignUnit(tx, site.id, body.unitId, `tags.${index}.unitId`);
     const made = await tx
       .insert(tags)
       .values(bodies.map((body) => ({ siteId: site.id, ...body })))
@@ -55,6 +70,7 @@ export async function changeTag(
     const locked = await lockRow(tx, 'tag', row);
     const [before] = await listTags(tx, row.siteId, { tagId: row.id });
     if (locked.version !== body.version) throw stale('tag', toWire(before!));
+    refuseEstimate(locked);
     await refuseForeignUnit(tx, row.siteId, body.unitId, 'unitId');
     const { archived, version, ...values } = body;
     await tx
@@ -68,7 +84,12 @@ export async function changeTag(
 }
 
 /** Points for a chart: raw readings while there are few, else means with their range by the hour or coarser. */
-export async function tagSeries(context: Context, tag: Permitted<TagRow>, from: Date, to: Date): Promise<Series> {
+export async function tagSeries(
+  context: Context,
+  tag: Permitted<TagRow>,
+  from: Date,
+  to: Date,
+): Promise<Series> {
   const key = { siteId: tag.siteId, tagId: tag.id };
   if ((await countReadings(context.db, key, from, to, mostPoints)) <= mostPoints) {
     const rows = await listReadings(context.db, key, from, to);
@@ -102,8 +123,14 @@ export async function removeTagReadings(
     throw new AppError('invalid-input', message, { fields: [{ path: 'to', message }] });
   }
   return context.db.transaction(async (tx) => {
-    const removed = await removeReadings(tx, { siteId: tag.siteId, tagId: tag.id }, from, to);
-    if (removed > 0) await readingsChanged(tx, { siteId: tag.siteId, tagIds: [tag.id], from, to });
+    const gone = await removeReadings(tx, { siteId: tag.siteId, tagId: tag.id }, from, to);
+    if (gone) {
+      // Only the hours that lost something: the period as typed may span centuries.
+      const change = { siteId: tag.siteId, tagIds: [tag.id], from: gone.first, to: gone.last };
+      await readingsChanged(tx, change);
+      await refreshSpan(tx, tag.siteId, tag.id);
+    }
+    const removed = gone?.removed ?? 0;
     await recordAudit(tx, {
       at: context.clock(),
       siteId: tag.siteId,
@@ -117,6 +144,15 @@ export async function removeTagReadings(
     });
     return removed;
   });
+}
+
+/** Name, unit and range of an estimate's tag stand on the data sheet, which keeps both alike. */
+function refuseEstimate(tag: TagRow): void {
+  if (tag.kind === 'measured') return;
+  throw new AppError(
+    'conflict',
+    `${tag.name} holds the estimate of a soft sensor. Change it on its data sheet.`,
+  );
 }
 
 async function refuseForeignUnit(tx: Tx, siteId: number, unitId: number | null, path: string): Promise<void> {
