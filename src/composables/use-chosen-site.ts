@@ -9,6 +9,8 @@ export function useChosenSite() {
   const sites = computed(() => (data.value ?? []).filter((site) => site.archivedAt === null));
   const chosen = computed(() => sites.value.find((site) => String(site.id) === view.site) ?? null);
   /** For pages that work at one site: the chosen one, or the only one. */
-  const workingSite = computed(() => chosen.value ?? (sites.value.length === 1 ? (sites.value[0] ?? null) : null));
+  const workingSite = computed(
+    () => chosen.value ?? (sites.value.length === 1 ? (sites.value[0] ?? null) : null),
+  );
   return { sites, chosen, workingSite };
 }
