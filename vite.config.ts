@@ -17,7 +17,7 @@ export default defineConfig(({ isSsrBuild }) => ({
           input: { main: 'server/main.ts', 'estimate-worker': 'server/jobs/estimate-worker.ts' },
         },
       }
-    : { outDir: 'dist/client', target: 'es2022' },
+    : { outDir: 'dist/client', target: 'es2022', manifest: true },
   test: {
     reporters: ['default', './tests/support/plain-reporter.ts'],
     maxWorkers: 2,

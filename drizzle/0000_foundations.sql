@@ -77,6 +77,26 @@ CREATE TABLE "replays" (
 	CONSTRAINT "replays_period" CHECK ("replays"."from_at" < "replays"."to_at")
 );
 --> statement-breakpoint
+CREATE TABLE "site_months" (
+	"site_id" integer NOT NULL,
+	"month" text NOT NULL,
+	"unfit" integer NOT NULL,
+	"unproven" integer NOT NULL,
+	CONSTRAINT "site_months_pkey" PRIMARY KEY("site_id","month"),
+	CONSTRAINT "site_months_form" CHECK ("site_months"."month" ~ '^\d{4}-\d{2}$')
+);
+--> statement-breakpoint
+CREATE TABLE "site_summaries" (
+	"site_id" integer PRIMARY KEY NOT NULL,
+	"total" integer NOT NULL,
+	"fit" integer NOT NULL,
+	"watch" integer NOT NULL,
+	"unfit" integer NOT NULL,
+	"unproven" integer NOT NULL,
+	"unfit_in_closed_loop" integer NOT NULL,
+	"not_in_service" integer NOT NULL
+);
+--> statement-breakpoint
 CREATE TABLE "soft_sensor_status" (
 	"site_id" integer NOT NULL,
 	"soft_sensor_id" integer NOT NULL,
@@ -96,6 +116,9 @@ CREATE TABLE "soft_sensor_status" (
 	"current_value" double precision,
 	"current_sd" double precision,
 	"health_since" timestamp (3) with time zone NOT NULL,
+	"in_service" boolean DEFAULT false NOT NULL,
+	"owner_id" integer,
+	"rank" double precision DEFAULT 0 NOT NULL,
 	"judged_at" timestamp (3) with time zone NOT NULL,
 	CONSTRAINT "soft_sensor_status_pkey" PRIMARY KEY("site_id","soft_sensor_id"),
 	CONSTRAINT "soft_sensor_status_health" CHECK ("soft_sensor_status"."health" in ('fit', 'watch', 'unfit', 'unproven'))
@@ -533,6 +556,9 @@ ALTER TABLE "replays" ADD CONSTRAINT "replays_sensor_fk" FOREIGN KEY ("site_id",
 ALTER TABLE "replays" ADD CONSTRAINT "replays_revision_fk" FOREIGN KEY ("site_id","revision_id") REFERENCES "public"."revisions"("site_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "replays" ADD CONSTRAINT "replays_draft_fk" FOREIGN KEY ("site_id","draft_id") REFERENCES "public"."drafts"("site_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "replays" ADD CONSTRAINT "replays_run_fk" FOREIGN KEY ("site_id","run_id") REFERENCES "public"."runs"("site_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
+ALTER TABLE "site_months" ADD CONSTRAINT "site_months_site_id_sites_id_fk" FOREIGN KEY ("site_id") REFERENCES "public"."sites"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
+ALTER TABLE "site_summaries" ADD CONSTRAINT "site_summaries_site_id_sites_id_fk" FOREIGN KEY ("site_id") REFERENCES "public"."sites"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
+ALTER TABLE "soft_sensor_status" ADD CONSTRAINT "soft_sensor_status_owner_id_persons_id_fk" FOREIGN KEY ("owner_id") REFERENCES "public"."persons"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "soft_sensor_status" ADD CONSTRAINT "soft_sensor_status_sensor_fk" FOREIGN KEY ("site_id","soft_sensor_id") REFERENCES "public"."soft_sensors"("site_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "soft_sensor_work" ADD CONSTRAINT "soft_sensor_work_sensor_fk" FOREIGN KEY ("site_id","soft_sensor_id") REFERENCES "public"."soft_sensors"("site_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "file_chunks" ADD CONSTRAINT "file_chunks_file_fk" FOREIGN KEY ("site_id","file_id") REFERENCES "public"."files"("site_id","id") ON DELETE cascade ON UPDATE no action;--> statement-breakpoint
@@ -593,7 +619,9 @@ CREATE INDEX "health_days_day" ON "health_days" USING btree ("site_id","day");--
 CREATE UNIQUE INDEX "pairs_current_key" ON "pairs" USING btree ("site_id","soft_sensor_id","sample_id") WHERE "pairs"."superseded_at" is null;--> statement-breakpoint
 CREATE INDEX "pairs_taken" ON "pairs" USING btree ("site_id","soft_sensor_id","taken_at");--> statement-breakpoint
 CREATE INDEX "replays_sensor" ON "replays" USING btree ("site_id","soft_sensor_id","created_at");--> statement-breakpoint
-CREATE INDEX "soft_sensor_status_worst" ON "soft_sensor_status" USING btree ("site_id","severity");--> statement-breakpoint
+CREATE INDEX "soft_sensor_status_worst" ON "soft_sensor_status" USING btree ("rank" DESC NULLS LAST) WHERE "soft_sensor_status"."in_service";--> statement-breakpoint
+CREATE INDEX "soft_sensor_status_unowned" ON "soft_sensor_status" USING btree ("site_id") WHERE "soft_sensor_status"."in_service" and "soft_sensor_status"."owner_id" is null;--> statement-breakpoint
+CREATE INDEX "soft_sensor_status_owner" ON "soft_sensor_status" USING btree ("owner_id");--> statement-breakpoint
 CREATE INDEX "history_imports_sha" ON "history_imports" USING btree ("site_id","sha256");--> statement-breakpoint
 CREATE INDEX "local_mails_received" ON "local_mails" USING btree ("received_at");--> statement-breakpoint
 CREATE INDEX "mails_created" ON "mails" USING btree ("created_at");--> statement-breakpoint

@@ -1,6 +1,6 @@
 import path from 'node:path';
 import { sql } from 'drizzle-orm';
-import express, { type Express } from 'express';
+import express, { type Express, type Router } from 'express';
 import { rateLimit } from 'express-rate-limit';
 import helmet from 'helmet';
 import { AppError, toProblem } from '../shared/contracts/errors.ts';
@@ -24,6 +24,8 @@ export interface AppOptions {
   clientFolder?: string;
   /** Sign-in attempts a quarter of an hour and address. */
   signInAttempts?: number;
+  /** Routers beside the product's own, such as a benchmark's peer. */
+  extraFeatures?: ((context: Context) => Router)[];
 }
 
 /** The Express application: middleware in order, then one router a feature. */
@@ -51,7 +53,7 @@ export function createApp(context: Context, options: AppOptions = {}): Express {
   api.use('/session', slowDownGuessing(attempts, true));
   api.use('/password-links', slowDownGuessing(attempts, false));
   api.use(loadActor(context, createSessions(context.db, context.config.publicUrl.startsWith('https:'))));
-  for (const routes of features) api.use(routes(context));
+  for (const routes of [...features, ...(options.extraFeatures ?? [])]) api.use(routes(context));
   api.use(notFound);
   app.use('/api/v1', api);
   app.use('/api', notFound);
@@ -103,6 +105,8 @@ function slowDownGuessing(limit: number, skipSuccessfulRequests: boolean) {
     limit,
     standardHeaders: 'draft-8',
     legacyHeaders: false,
+    // Without a trusted proxy the header is simply not believed; that is no mistake in the settings.
+    validate: { xForwardedForHeader: false },
     skip: (request) => request.method !== 'POST',
     skipSuccessfulRequests,
     handler: (_request, response) => {

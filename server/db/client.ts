@@ -12,9 +12,9 @@ export type Queryable = Db | Tx;
 export function createPool(url: string, log: Logger, max = 10): pg.Pool {
   const pool = new pg.Pool({ connectionString: url, max, application_name: 'cupel' });
   // Without these two a connection that the server closes would end the process.
-  pool.on('error', (error) => log.warn({ error }, 'an idle database connection was lost'));
+  pool.on('error', (error) => log.warn({ err: error }, 'an idle database connection was lost'));
   pool.on('connect', (client) =>
-    client.on('error', (error) => log.warn({ error }, 'a database connection was lost')),
+    client.on('error', (error) => log.warn({ err: error }, 'a database connection was lost')),
   );
   return pool;
 }

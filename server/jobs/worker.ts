@@ -26,24 +26,26 @@ export async function startWorkers(context: Context): Promise<Workers> {
     max: concurrency + 2,
     application_name: 'cupel-jobs',
   });
-  pool.on('error', (error) => context.log.warn({ error }, 'an idle queue connection was lost'));
+  pool.on('error', (error) => context.log.warn({ err: error }, 'an idle queue connection was lost'));
   pool.on('connect', (client) =>
-    client.on('error', (error) => context.log.warn({ error }, 'a queue connection was lost')),
+    client.on('error', (error) => context.log.warn({ err: error }, 'a queue connection was lost')),
   );
   const life = new pg.Client({
     connectionString: context.config.databaseDirectUrl,
     application_name: 'cupel-worker-life',
   });
   life.on('error', (error) =>
-    context.log.warn({ error }, 'the connection that shows this worker alive was lost'),
+    context.log.warn({ err: error }, 'the connection that shows this worker alive was lost'),
   );
   await life.connect();
   const events = new EventEmitter() as WorkerEvents;
   // Jobs are locked in the name of the pool, so it is the pool that must be seen to live.
   events.on('pool:create', ({ workerPool }) => {
-    life.query('select pg_advisory_lock($1, hashtext($2))', [lifeLock, workerPool.id]).catch((error: unknown) => {
-      context.log.warn({ error }, 'this worker could not show that it lives');
-    });
+    life
+      .query('select pg_advisory_lock($1, hashtext($2))', [lifeLock, workerPool.id])
+      .catch((error: unknown) => {
+        context.log.warn({ err: error }, 'this worker could not show that it lives');
+      });
   });
   const runner: Runner = await run({
     pgPool: pool,

@@ -25,7 +25,7 @@ export async function startLocalMailServer(context: Context): Promise<LocalMailS
       });
     },
   });
-  server.on('error', (error) => context.log.warn({ error }, 'the local mail server reports an error'));
+  server.on('error', (error) => context.log.warn({ err: error }, 'the local mail server reports an error'));
   await new Promise<void>((resolve, reject) => {
     server.once('error', reject);
     server.listen(0, '127.0.0.1', resolve);

@@ -12,7 +12,8 @@ import {
   unique,
   uniqueIndex,
 } from 'drizzle-orm/pg-core';
-import type { Consumer, FitSummary, Model } from '../../../shared/contracts/register.ts';
+import type { FitSummary, Model } from '../../../shared/contracts/models.ts';
+import type { Consumer } from '../../../shared/contracts/register.ts';
 import { identity, instant } from './columns.ts';
 import { persons } from './people.ts';
 import { sites, units } from './sites.ts';

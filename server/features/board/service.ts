@@ -2,22 +2,21 @@ import { format, subMonths } from 'date-fns';
 import type { Board } from '../../../shared/contracts/board.ts';
 import type { Context } from '../../context.ts';
 import type { Actor } from '../../http/request.ts';
-import { type BoardFilter, countBySite, monthsBySite, waitingFor, worstFirst } from './repo.ts';
+import { type BoardFilter, countBySite, waitingFor, worstFirst } from './repo.ts';
 
 const monthsShown = 12;
 
 /** The board: counts, months, what waits, worst first. It reads what judging wrote and judges nothing itself. */
 export async function readBoard(context: Context, actor: Actor, filter: BoardFilter): Promise<Board> {
   const now = context.clock();
-  const since = format(subMonths(now, monthsShown - 1), 'yyyy-MM-01');
+  const since = format(subMonths(now, monthsShown - 1), 'yyyy-MM');
   const managed = actor.roles.filter((held) => held.role === 'manager').map((held) => held.siteId);
-  const [bySite, rows, months, waiting] = await Promise.all([
-    countBySite(context.db, filter),
+  const [bySite, rows, waiting] = await Promise.all([
+    countBySite(context.db, filter, since),
     worstFirst(context.db, filter),
-    monthsBySite(context.db, filter, since),
     waitingFor(context.db, { id: actor.id, managed }, filter),
   ]);
-  const sum = (name: Exclude<keyof Board['counts'], never>) => bySite.reduce((total, site) => total + site[name], 0);
+  const sum = (name: keyof Board['counts']) => bySite.reduce((total, site) => total + site[name], 0);
   return {
     counts: {
       total: sum('total'),
@@ -28,15 +27,7 @@ export async function readBoard(context: Context, actor: Actor, filter: BoardFil
       unfitInClosedLoop: sum('unfitInClosedLoop'),
       notInService: sum('notInService'),
     },
-    sites: bySite.map(({ siteId, name, zone, total }) => ({
-      siteId,
-      name,
-      zone,
-      total,
-      months: months
-        .filter((month) => month.siteId === siteId)
-        .map(({ month, unfit, unproven }) => ({ month, unfit, unproven })),
-    })),
+    sites: bySite.map(({ siteId, name, zone, total, months }) => ({ siteId, name, zone, total, months })),
     rows,
     waiting,
     at: now.toISOString(),

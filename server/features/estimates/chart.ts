@@ -10,7 +10,12 @@ import { type SensorRow, approvedRevisions } from './repo.ts';
 type ChartSeries = z.input<typeof chartSeries>;
 
 /** The estimate for a chart with the band that should hold 95 % of true values, where its SD is known. */
-export async function estimateSeries(context: Context, sensor: SensorRow, from: Date, to: Date): Promise<ChartSeries> {
+export async function estimateSeries(
+  context: Context,
+  sensor: SensorRow,
+  from: Date,
+  to: Date,
+): Promise<ChartSeries> {
   const tag = (await findTag(context.db, sensor.siteId, sensor.estimateTagId))!;
   const series = await tagSeries(context, tag as Permitted<typeof tag>, from, to);
   const sd = (await approvedRevisions(context.db, sensor.siteId, sensor.id)).at(-1)?.model.residualSd ?? null;

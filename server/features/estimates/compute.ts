@@ -8,7 +8,14 @@ import { judgeSensor } from '../judging/service.ts';
 import { refreshSpan } from '../tags/spans.ts';
 import type { ComputeContext } from './context.ts';
 import { estimatorOf, readInputs } from './inputs.ts';
-import { type RevisionRow, type SensorRow, approvedRevisions, findSensor, spansOf, takeWork } from './repo.ts';
+import {
+  type RevisionRow,
+  type SensorRow,
+  approvedRevisions,
+  findSensor,
+  spansOf,
+  takeWork,
+} from './repo.ts';
 import { removeEstimates, writeEstimates } from './write.ts';
 
 /** Grid points computed and written at a time: bounds memory, whatever the length of the history. */

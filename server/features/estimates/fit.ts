@@ -37,7 +37,8 @@ export async function fitDraft(context: ComputeContext, order: FitOrder): Promis
         .update(drafts)
         .set({ model, fit, version: draft.version + 1, updatedAt: context.clock() })
         .where(and(eq(drafts.id, draft.id), eq(drafts.version, order.version)));
-      if (saved.rowCount !== 1) throw new AppError('stale', 'The draft was changed meanwhile, so nothing was saved. Fit it again.');
+      if (saved.rowCount !== 1)
+        throw new AppError('stale', 'The draft was changed meanwhile, so nothing was saved. Fit it again.');
       return { softSensorId: sensor.id, samples: fit.samples };
     }),
   );
@@ -60,19 +61,36 @@ async function trainingData(
 ): Promise<TrainingData> {
   const until = new Date(Date.parse(period.to) - 1);
   const samples = await samplesBetween(db, sensor, new Date(period.from), until);
-  const known = await tagNames(db, sensor.siteId, model.terms.map((term) => term.tagId));
-  const names = model.terms.map(({ tagId }) => ({ tagId, name: known.get(tagId)?.name ?? '', unit: known.get(tagId)?.unit ?? '' }));
+  const known = await tagNames(
+    db,
+    sensor.siteId,
+    model.terms.map((term) => term.tagId),
+  );
+  const names = model.terms.map(({ tagId }) => ({
+    tagId,
+    name: known.get(tagId)?.name ?? '',
+    unit: known.get(tagId)?.unit ?? '',
+  }));
   const notUsed = new Map<string, number>();
-  if (samples.length === 0) return { columns: names.map(() => new Float64Array()), y: new Float64Array(), names, notUsed };
+  if (samples.length === 0)
+    return { columns: names.map(() => new Float64Array()), y: new Float64Array(), names, notUsed };
   const first = samples[0]!.takenAt!.getTime() - sensor.transportDelayMs;
   const last = samples.at(-1)!.takenAt!.getTime() - sensor.transportDelayMs;
   const grid = gridWithin(first - model.stepMs, last, model.stepMs);
   const inputs = await readInputs(client, sensor.siteId, model, grid);
   const rows: { x: number[]; y: number }[] = [];
   for (const sample of samples) {
-    const index = Math.floor((sample.takenAt!.getTime() - sensor.transportDelayMs - grid.startMs) / grid.stepMs);
+    const index = Math.floor(
+      (sample.takenAt!.getTime() - sensor.transportDelayMs - grid.startMs) / grid.stepMs,
+    );
     const x = inputs.map((column) => column.value[index] ?? NaN);
-    const reason = sample.qualifier ? 'censored' : sample.heldSince ? 'held' : x.every(Number.isFinite) ? null : 'no-input';
+    const reason = sample.qualifier
+      ? 'censored'
+      : sample.heldSince
+        ? 'held'
+        : x.every(Number.isFinite)
+          ? null
+          : 'no-input';
     if (reason) notUsed.set(reason, (notUsed.get(reason) ?? 0) + 1);
     else rows.push({ x, y: sample.value });
   }
@@ -91,7 +109,8 @@ function fitted(
 ): { model: RegressionModel; fit: FitSummary } {
   const names = data.names.map(({ name }) => name);
   const found = fitLeastSquares({ columns: data.columns, names, y: data.y, intercept: true });
-  if (!found.ok) throw new AppError('not-enough-data', fitRefusalSentence(found, { from: order.from, to: order.to }));
+  if (!found.ok)
+    throw new AppError('not-enough-data', fitRefusalSentence(found, { from: order.from, to: order.to }));
   const range = (column: Float64Array) => ({
     low: column.reduce((a, b) => Math.min(a, b), Infinity),
     high: column.reduce((a, b) => Math.max(a, b), -Infinity),

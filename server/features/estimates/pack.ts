@@ -9,6 +9,9 @@ export function packSeries(series: EstimateSeries): Buffer {
   const n = series.at.length;
   const head = Buffer.alloc(4);
   head.writeUInt32LE(n);
-  const part = (array: Float64Array | Uint8Array) => Buffer.from(array.buffer, array.byteOffset, array.byteLength);
-  return gzipSync(Buffer.concat([head, part(series.at), part(series.value), part(series.quality)]), { level: 1 });
+  const part = (array: Float64Array | Uint8Array) =>
+    Buffer.from(array.buffer, array.byteOffset, array.byteLength);
+  return gzipSync(Buffer.concat([head, part(series.at), part(series.value), part(series.quality)]), {
+    level: 1,
+  });
 }

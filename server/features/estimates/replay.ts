@@ -38,14 +38,23 @@ export async function runReplay(
       const errors = await pairReplay(db, sensor!, replay!, series);
       const names = await tagNames(db, siteId, [...missing.keys()]);
       const figures: ReplayFigures = {
-        judgement: judge(errors, { updateFactor: replay!.updateFactor, residualSd: replay!.model.residualSd }),
+        judgement: judge(errors, {
+          updateFactor: replay!.updateFactor,
+          residualSd: replay!.model.residualSd,
+        }),
         errors,
         steps,
         estimated: series.at.length,
-        withoutEstimate: [...missing].map(([tagId, count]) => ({ tagName: names.get(tagId)?.name ?? '', steps: count })),
+        withoutEstimate: [...missing].map(([tagId, count]) => ({
+          tagName: names.get(tagId)?.name ?? '',
+          steps: count,
+        })),
         chart: chartOf(series, replay!.model.residualSd),
       };
-      await db.update(replays).set({ figures, packed: packSeries(series) }).where(eq(replays.id, replayId));
+      await db
+        .update(replays)
+        .set({ figures, packed: packSeries(series) })
+        .where(eq(replays.id, replayId));
       return { replayId };
     }),
   );
@@ -72,7 +81,10 @@ async function estimateOver(
   }
   const whole = gridWithin(replay.fromAt.getTime(), replay.toAt.getTime(), model.stepMs);
   if (whole.n > mostSteps) {
-    throw new AppError('invalid-input', `This period has ${whole.n.toLocaleString('en')} steps; replay a shorter one.`);
+    throw new AppError(
+      'invalid-input',
+      `This period has ${whole.n.toLocaleString('en')} steps; replay a shorter one.`,
+    );
   }
   const estimator = estimatorOf(model);
   let state = estimator.start();
@@ -80,18 +92,30 @@ async function estimateOver(
   const missing = new Map<number, number>();
   for (let done = 0; done < whole.n; done += chunkSteps) {
     await progress.report(done, whole.n);
-    const grid: Grid = { startMs: whole.startMs + done * whole.stepMs, stepMs: whole.stepMs, n: Math.min(chunkSteps, whole.n - done) };
+    const grid: Grid = {
+      startMs: whole.startMs + done * whole.stepMs,
+      stepMs: whole.stepMs,
+      n: Math.min(chunkSteps, whole.n - done),
+    };
     const inputs = await readInputs(client, sensor.siteId, model, grid);
     const result = estimator.run(grid, inputs, state);
     state = result.state;
     collected.take(grid, result.estimate);
-    countMissing(missing, model.terms.map((term) => term.tagId), inputs);
+    countMissing(
+      missing,
+      model.terms.map((term) => term.tagId),
+      inputs,
+    );
   }
   await progress.report(whole.n, whole.n);
   return { series: collected.series(), missing, steps: whole.n };
 }
 
-function countMissing(missing: Map<number, number>, tagIds: readonly number[], inputs: readonly GridColumn[]): void {
+function countMissing(
+  missing: Map<number, number>,
+  tagIds: readonly number[],
+  inputs: readonly GridColumn[],
+): void {
   for (const [j, column] of inputs.entries()) {
     let count = 0;
     for (const quality of column.quality) if (quality === bad) count++;
@@ -142,7 +166,13 @@ async function pairReplay(
     const options = { holdLimitMs: replay.model.holdLimitMs, windowMs: sensor.pairingWindowMs };
     const paired = pairAt(series, atMs, options);
     const error = paired.ok ? paired.estimate - sample.value : null;
-    const notCounted = !paired.ok ? 'no-estimate' : sample.qualifier ? 'censored' : sample.heldSince ? 'held' : null;
+    const notCounted = !paired.ok
+      ? 'no-estimate'
+      : sample.qualifier
+        ? 'censored'
+        : sample.heldSince
+          ? 'held'
+          : null;
     return {
       sampleId: sample.id,
       sampleNumber: sample.sampleNumber,

@@ -51,7 +51,12 @@ export async function startReplay(
       createdAt,
     });
     await tx.update(replays).set({ runId: run.id }).where(eq(replays.id, replay!.id));
-    await addJob(tx, 'replay', { siteId: sensor.siteId, replayId: replay!.id, runId: run.id }, { maxAttempts: 3 });
+    await addJob(
+      tx,
+      'replay',
+      { siteId: sensor.siteId, replayId: replay!.id, runId: run.id },
+      { maxAttempts: 3 },
+    );
     await recordAudit(tx, {
       at: createdAt,
       siteId: sensor.siteId,
@@ -72,7 +77,8 @@ function refuseEmptyPeriod(body: StartBody): void {
     throw new AppError('invalid-input', message, { fields: [{ path, message }] });
   };
   if (Date.parse(body.from) >= Date.parse(body.to)) say('to', 'The end must be after the beginning.');
-  if (Date.parse(body.judgedFrom) >= Date.parse(body.to)) say('judgedFrom', 'Judging must begin before the end.');
+  if (Date.parse(body.judgedFrom) >= Date.parse(body.to))
+    say('judgedFrom', 'Judging must begin before the end.');
 }
 
 async function chooseModel(tx: Queryable, sensor: SensorRow, wanted: 'draft' | 'in-force') {
@@ -98,7 +104,10 @@ function selectReplays(db: Queryable) {
     .select(columns)
     .from(replays)
     .innerJoin(persons, eq(persons.id, replays.createdBy))
-    .innerJoin(softSensors, and(eq(softSensors.siteId, replays.siteId), eq(softSensors.id, replays.softSensorId)))
+    .innerJoin(
+      softSensors,
+      and(eq(softSensors.siteId, replays.siteId), eq(softSensors.id, replays.softSensorId)),
+    )
     .leftJoin(methods, and(eq(methods.siteId, softSensors.siteId), eq(methods.id, softSensors.methodId)))
     .leftJoin(revisions, and(eq(revisions.siteId, replays.siteId), eq(revisions.id, replays.revisionId)))
     .$dynamic();
@@ -120,7 +129,9 @@ export async function listReplays(db: Queryable, sensor: SensorRow, onlyId?: num
 }
 
 export async function getReplay(db: Db, replay: Permitted<ReplayRow>): Promise<Replay> {
-  const [row] = await selectReplays(db).where(and(eq(replays.siteId, replay.siteId), eq(replays.id, replay.id)));
+  const [row] = await selectReplays(db).where(
+    and(eq(replays.siteId, replay.siteId), eq(replays.id, replay.id)),
+  );
   return toReplay(row!, true);
 }
 
@@ -148,7 +159,12 @@ function toReplay(row: ListedReplay, whole: boolean): Replay {
     reproducibility: row.reproducibility,
     figures:
       figures && !whole
-        ? { ...figures, errors: [], chart: { at: [], value: [], low: [], high: [] }, judgement: { ...figures.judgement, ewma: null } }
+        ? {
+            ...figures,
+            errors: [],
+            chart: { at: [], value: [], low: [], high: [] },
+            judgement: { ...figures.judgement, ewma: null },
+          }
         : figures,
   };
 }

@@ -14,7 +14,11 @@ export async function findSensor(db: Queryable, siteId: number, id: number): Pro
 }
 
 /** Approved revisions, the first in force first. */
-export async function approvedRevisions(db: Queryable, siteId: number, softSensorId: number): Promise<RevisionRow[]> {
+export async function approvedRevisions(
+  db: Queryable,
+  siteId: number,
+  softSensorId: number,
+): Promise<RevisionRow[]> {
   return db
     .select()
     .from(revisions)
@@ -48,7 +52,12 @@ export async function takeWork(db: Queryable, siteId: number, softSensorId: numb
 /** First and last reading of each tag; tags without readings are absent. */
 export async function spansOf(db: Queryable, siteId: number, tagIds: readonly number[]) {
   const rows = await db
-    .select({ tagId: tagSpans.tagId, firstAt: tagSpans.firstAt, lastAt: tagSpans.lastAt, lastValue: tagSpans.lastValue })
+    .select({
+      tagId: tagSpans.tagId,
+      firstAt: tagSpans.firstAt,
+      lastAt: tagSpans.lastAt,
+      lastValue: tagSpans.lastValue,
+    })
     .from(tagSpans)
     .where(and(eq(tagSpans.siteId, siteId), sql`${tagSpans.tagId} = any(${sql.param([...tagIds])}::int[])`));
   return new Map(rows.map((row) => [row.tagId, row]));

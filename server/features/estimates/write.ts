@@ -13,7 +13,12 @@ const bad = 2;
 const linesAtOnce = 5000;
 
 /** Takes computed readings out again before they are computed anew; open ends are ±Infinity. */
-export async function removeEstimates(tx: Tx, sensor: SensorRow, fromMs: number, toMs: number): Promise<void> {
+export async function removeEstimates(
+  tx: Tx,
+  sensor: SensorRow,
+  fromMs: number,
+  toMs: number,
+): Promise<void> {
   const from = Number.isFinite(fromMs) ? new Date(fromMs).toISOString() : '-infinity';
   const to = Number.isFinite(toMs) ? new Date(toMs).toISOString() : 'infinity';
   const removed = await tx.execute<{ first: Date | null; last: Date | null }>(sql`
@@ -22,7 +27,8 @@ export async function removeEstimates(tx: Tx, sensor: SensorRow, fromMs: number,
         and at >= ${from}::timestamptz and at < ${to}::timestamptz returning at)
     select min(at) as first, max(at) as last from gone`);
   const { first, last } = removed.rows[0]!;
-  if (first && last) await rollUpLater(tx, sensor.siteId, [sensor.estimateTagId], new Date(first), new Date(last));
+  if (first && last)
+    await rollUpLater(tx, sensor.siteId, [sensor.estimateTagId], new Date(first), new Date(last));
 }
 
 /** Writes one chunk of an estimate; instants without an estimate get no reading. Rows are new and in key order. */

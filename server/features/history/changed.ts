@@ -4,7 +4,13 @@ import { addJob } from '../../jobs/queue.ts';
 import { markDirty } from '../estimates/work.ts';
 
 /** Marks the hours of these tags between two instants, to be rolled up by a job. */
-export async function rollUpLater(tx: Queryable, siteId: number, tagIds: number[], from: Date, to: Date): Promise<void> {
+export async function rollUpLater(
+  tx: Queryable,
+  siteId: number,
+  tagIds: number[],
+  from: Date,
+  to: Date,
+): Promise<void> {
   const ids = sql`${sql.param(tagIds)}::int[]`;
   await tx.execute(sql`
     insert into dirty_hours (site_id, tag_id, hour)

@@ -23,7 +23,8 @@ export function recogniseText(head: Buffer): TextEncoding {
       'This file is a web page or XML, not CSV. Perhaps a sign-in page was saved instead of the export. Export again and send the CSV.',
     );
   }
-  if (/^[{[]\s*["{[]/.test(start)) throw noCsv('This file is JSON, not CSV. Export the readings as CSV and send that.');
+  if (/^[{[]\s*["{[]/.test(start))
+    throw noCsv('This file is JSON, not CSV. Export the readings as CSV and send that.');
   return encoding;
 }
 
@@ -58,7 +59,10 @@ function utf16WithoutMark(head: Buffer): TextEncoding {
   throw binary();
 }
 
-const binary = () => noCsv('This file holds no text but binary data, so it is no CSV. Export the readings as CSV and send that.');
+const binary = () =>
+  noCsv(
+    'This file holds no text but binary data, so it is no CSV. Export the readings as CSV and send that.',
+  );
 
 /** The text of the first piece of a file; a character cut off at its end is left out. */
 export function decodeHead(head: Buffer, encoding: TextEncoding): string {
@@ -69,7 +73,10 @@ export function decodeHead(head: Buffer, encoding: TextEncoding): string {
  * A file's text, piece by piece, the byte order mark left out. A file that has been ASCII so far and then is no UTF-8
  * goes on as windows-1252; one that mixes both is refused.
  */
-export async function* decodeText(pieces: AsyncIterable<Buffer>, encoding: TextEncoding): AsyncGenerator<string> {
+export async function* decodeText(
+  pieces: AsyncIterable<Buffer>,
+  encoding: TextEncoding,
+): AsyncGenerator<string> {
   let decoder = new TextDecoder(encoding, { fatal: true });
   let ascii = encoding === 'utf-8';
   for await (const piece of pieces) {
@@ -78,7 +85,10 @@ export async function* decodeText(pieces: AsyncIterable<Buffer>, encoding: TextE
       yield text;
       ascii &&= text.length === piece.length;
     } catch {
-      if (!ascii) throw noCsv(`This file is not ${encoding.toUpperCase()} throughout. Save it anew as UTF-8 and send it again.`);
+      if (!ascii)
+        throw noCsv(
+          `This file is not ${encoding.toUpperCase()} throughout. Save it anew as UTF-8 and send it again.`,
+        );
       decoder = new TextDecoder('windows-1252');
       ascii = false;
       yield decoder.decode(piece, { stream: true });

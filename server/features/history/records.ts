@@ -101,5 +101,7 @@ export class RecordReader {
 function quoteTrouble(error: Error & { code?: string; lines?: number }): Error {
   if (!error.code?.startsWith('CSV_') && error.code !== 'INVALID_OPENING_QUOTE') return error;
   const where = error.lines === undefined ? '' : ` near line ${error.lines}`;
-  return noCsv(`A quotation mark${where} is opened and never closed, so the cells after it can’t be told apart. Close it and send the file again.`);
+  return noCsv(
+    `A quotation mark${where} is opened and never closed, so the cells after it can’t be told apart. Close it and send the file again.`,
+  );
 }

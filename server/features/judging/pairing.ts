@@ -4,7 +4,14 @@ import type { Tx } from '../../db/client.ts';
 import { pairs } from '../../db/schema/index.ts';
 import { type RevisionRow, type SensorRow, approvedRevisions } from '../estimates/repo.ts';
 import { readSeries } from '../estimates/series.ts';
-import { type PairRow, type SampleRow, addPairs, retireOrphanPairs, samplesToPair, supersedePairs } from './repo.ts';
+import {
+  type PairRow,
+  type SampleRow,
+  addPairs,
+  retireOrphanPairs,
+  samplesToPair,
+  supersedePairs,
+} from './repo.ts';
 
 type NewPair = typeof pairs.$inferInsert;
 
@@ -23,7 +30,13 @@ export async function pairSamples(
   const found = await samplesToPair(tx, sensor, dirtyFrom);
   if (found.length === 0) return;
   const revisions = await approvedRevisions(tx, sensor.siteId, sensor.id);
-  const makePair = await pairMaker(client, sensor, revisions, found.map(({ sample }) => sample), now);
+  const makePair = await pairMaker(
+    client,
+    sensor,
+    revisions,
+    found.map(({ sample }) => sample),
+    now,
+  );
   const made: NewPair[] = [];
   const replaced: number[] = [];
   for (const { sample, pair } of found) {
@@ -43,7 +56,9 @@ async function pairMaker(
   samples: readonly SampleRow[],
   now: Date,
 ): Promise<(sample: SampleRow) => NewPair> {
-  const times = samples.flatMap((sample) => (sample.takenAt ? [sample.takenAt.getTime() - sensor.transportDelayMs] : []));
+  const times = samples.flatMap((sample) =>
+    sample.takenAt ? [sample.takenAt.getTime() - sensor.transportDelayMs] : [],
+  );
   const margin = holdLimitOf(revisions.at(-1)) + sensor.pairingWindowMs;
   const series = await readSeries(
     client,
@@ -91,7 +106,10 @@ function whyNotCounted(sample: SampleRow): string | null {
 const holdLimitOf = (revision: RevisionRow | undefined): number => revision?.model.holdLimitMs ?? 0;
 
 /** The revision in force at an instant; before the first one, the first, whose estimate there was computed afterwards. */
-function revisionAt(revisions: readonly RevisionRow[], atMs: number): { row: RevisionRow; recorded: boolean } | null {
+function revisionAt(
+  revisions: readonly RevisionRow[],
+  atMs: number,
+): { row: RevisionRow; recorded: boolean } | null {
   const inForce = revisions.findLast((revision) => revision.effectiveFrom!.getTime() <= atMs);
   if (inForce) return { row: inForce, recorded: true };
   return revisions[0] ? { row: revisions[0], recorded: false } : null;

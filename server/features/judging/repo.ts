@@ -40,14 +40,21 @@ export async function samplesToPair(tx: Queryable, sensor: SensorRow, from: Date
         eq(samples.samplePointId, sensor.samplePointId),
         isNull(samples.supersededAt),
         isNull(samples.withdrawnAt),
-        sensor.methodId === null ? undefined : sql`coalesce(${samples.methodId}, ${sensor.methodId}) = ${sensor.methodId}`,
+        sensor.methodId === null
+          ? undefined
+          : sql`coalesce(${samples.methodId}, ${sensor.methodId}) = ${sensor.methodId}`,
         sql`(${pairs.id} is null or ${since})`,
       ),
     )
     .orderBy(asc(samples.takenAt));
 }
 
-export async function supersedePairs(tx: Queryable, siteId: number, ids: readonly number[], now: Date): Promise<void> {
+export async function supersedePairs(
+  tx: Queryable,
+  siteId: number,
+  ids: readonly number[],
+  now: Date,
+): Promise<void> {
   if (ids.length === 0) return;
   await tx
     .update(pairs)
@@ -81,7 +88,12 @@ export async function standingPairs(db: Queryable, sensor: SensorRow, period?: {
 }
 
 /** The last standing pairs since an instant (or of all time), oldest first. */
-export async function lastPairs(db: Queryable, sensor: SensorRow, since: Date | null, atMost: number): Promise<PairRow[]> {
+export async function lastPairs(
+  db: Queryable,
+  sensor: SensorRow,
+  since: Date | null,
+  atMost: number,
+): Promise<PairRow[]> {
   const rows = await db
     .select()
     .from(pairs)
@@ -114,14 +126,17 @@ export async function saveStatus(tx: Queryable, row: typeof softSensorStatus.$in
     .onConflictDoUpdate({ target: [softSensorStatus.siteId, softSensorStatus.softSensorId], set: values });
 }
 
+/** Keeps the health of a day; true where it is the day's first. */
 export async function saveHealthDay(
   tx: Queryable,
   row: { siteId: number; softSensorId: number; day: string; health: string },
-): Promise<void> {
-  await tx.execute(sql`
+): Promise<boolean> {
+  const saved = await tx.execute<{ fresh: boolean }>(sql`
     insert into health_days (site_id, soft_sensor_id, day, health)
     values (${row.siteId}, ${row.softSensorId}, ${row.day}, ${row.health})
-    on conflict (site_id, soft_sensor_id, day) do update set health = excluded.health`);
+    on conflict (site_id, soft_sensor_id, day) do update set health = excluded.health
+    returning (xmax = 0) as fresh`);
+  return saved.rows[0]!.fresh;
 }
 
 export async function lifeNow(db: Queryable, siteId: number, softSensorId: number) {
@@ -142,7 +157,12 @@ export async function sensorsInService(db: Queryable): Promise<{ siteId: number;
 }
 
 /** Samples that judge this sensor, with a time, taken in a period; oldest first. */
-export async function samplesBetween(db: Queryable, sensor: SensorRow, from: Date, to: Date): Promise<SampleRow[]> {
+export async function samplesBetween(
+  db: Queryable,
+  sensor: SensorRow,
+  from: Date,
+  to: Date,
+): Promise<SampleRow[]> {
   if (sensor.samplePointId === null) return [];
   return db
     .select()

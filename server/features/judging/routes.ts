@@ -14,7 +14,8 @@ export const judgingRoutes = (context: Context) =>
         { from: new Date(query.from), to: new Date(query.to) },
         query.updateFactor ?? row.updateFactor,
       ),
-    'estimate.series': ({ row, query }) => estimateSeries(context, row, new Date(query.from), new Date(query.to)),
+    'estimate.series': ({ row, query }) =>
+      estimateSeries(context, row, new Date(query.from), new Date(query.to)),
     'replays.list': async ({ row }) => ({ rows: await listReplays(context.db, row) }),
     'replays.start': ({ actor, origin, row, body }) => startReplay(context, { actor, origin }, row, body),
     'replays.get': ({ row }) => getReplay(context.db, row),

@@ -1,6 +1,6 @@
 import { sql } from 'drizzle-orm';
 import type pg from 'pg';
-import type { ErrorStripPoint, PairedError, Performance } from '../../../shared/contracts/judging.ts';
+import type { ErrorStripPoint, Health, PairedError, Performance } from '../../../shared/contracts/judging.ts';
 import type { Model } from '../../../shared/contracts/models.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
 import { wallClock } from '../../../shared/rules/format.ts';
@@ -16,10 +16,27 @@ import {
 import { judge } from '../../../shared/rules/judgement.ts';
 import { type Db, type Tx, withClient } from '../../db/client.ts';
 import type { ComputeContext } from '../estimates/context.ts';
-import { type RevisionRow, type SensorRow, approvedRevisions, findSensor, methodOf, spansOf } from '../estimates/repo.ts';
+import {
+  type RevisionRow,
+  type SensorRow,
+  approvedRevisions,
+  findSensor,
+  methodOf,
+  spansOf,
+} from '../estimates/repo.ts';
+import { recountSite } from '../board/summary.ts';
+import { currentOwnership } from '../register/repo.ts';
 import { getSite } from '../sites/repo.ts';
 import { pairSamples } from './pairing.ts';
-import { type PairRow, findStatus, lastPairs, saveHealthDay, saveStatus, standingPairs } from './repo.ts';
+import {
+  type PairRow,
+  findStatus,
+  lastPairs,
+  lifeNow,
+  saveHealthDay,
+  saveStatus,
+  standingPairs,
+} from './repo.ts';
 
 /** Pairs read to judge health: enough for the window and for reasons to enter and leave. */
 const pairsForHealth = 150;
@@ -55,13 +72,17 @@ export async function judgeSensor(
   const span = (await spansOf(tx, sensor.siteId, [sensor.estimateTagId])).get(sensor.estimateTagId);
   const inForce = revisions.at(-1) ?? null;
   const errors = countedErrors(sensor, pairs);
-  const { health, reasons } = healthOf(healthInput(sensor, pairs, errors, inForce, span?.lastAt ?? null, now));
+  const { health, reasons } = healthOf(
+    healthInput(sensor, pairs, errors, inForce, span?.lastAt ?? null, now),
+  );
+  const key = { siteId: sensor.siteId, softSensorId: sensor.id };
   const before = await findStatus(tx, sensor.siteId, sensor.id);
+  const inService = (await lifeNow(tx, sensor.siteId, sensor.id))?.state === 'in-service';
+  const ownerId = (await currentOwnership(tx, sensor.siteId, sensor.id))?.ownerId ?? null;
   const bias = biasFigures(errors);
   const lastPair = pairs.findLast((pair) => pair.notCounted === null) ?? null;
   await saveStatus(tx, {
-    siteId: sensor.siteId,
-    softSensorId: sensor.id,
+    ...key,
     health,
     severity: severityOf(health),
     reasons,
@@ -78,10 +99,15 @@ export async function judgeSensor(
     currentValue: span?.lastValue ?? null,
     currentSd: inForce?.model.residualSd ?? null,
     healthSince: before && before.health === health ? before.healthSince : now,
+    inService,
+    ownerId,
+    rank: rankOf(sensor, health, errors),
     judgedAt: now,
   });
   const { zone } = await getSite(tx, sensor.siteId);
-  await saveHealthDay(tx, { siteId: sensor.siteId, softSensorId: sensor.id, day: localDay(now, zone), health });
+  const newDay = await saveHealthDay(tx, { ...key, day: localDay(now, zone), health });
+  if (newDay || before?.health !== health || before.inService !== inService)
+    await recountSite(tx, sensor.siteId, now);
 }
 
 /**
@@ -133,7 +159,11 @@ function countedErrors(sensor: SensorRow, pairs: readonly PairRow[]): CountedErr
     }));
 }
 
-function allowedNow(sensor: SensorRow, errors: readonly CountedError[], current: number | null): number | null {
+function allowedNow(
+  sensor: SensorRow,
+  errors: readonly CountedError[],
+  current: number | null,
+): number | null {
   if (errors.length > 0) return allowedOver(errors.slice(-biasWindow));
   return current === null ? sensor.allowedErrorAbsolute : allowedAt(sensor, current);
 }
@@ -143,10 +173,20 @@ const stripOf = (errors: readonly CountedError[]): ErrorStripPoint[] =>
     .slice(-stripLength)
     .map(({ takenMs, error, allowed }) => ({ at: new Date(takenMs).toISOString(), error, allowed }));
 
+/** Worst first on the board: health, then class A before B before C, then the bias against the allowed error. */
+function rankOf(sensor: SensorRow, health: Health, errors: readonly CountedError[]): number {
+  const { bias, allowed } = biasFigures(errors);
+  const share =
+    typeof bias === 'number' && Number(allowed) > 0 ? Math.min(999, Math.abs(bias) / Number(allowed)) : 0;
+  return severityOf(health) * 10_000 + { A: 3000, B: 2000, C: 1000 }[sensor.importanceClass] + share;
+}
+
 const numberOrNull = (value: unknown): number | null => (typeof value === 'number' ? value : null);
 
 const rmseOf = (errors: readonly CountedError[]): number | null =>
-  errors.length === 0 ? null : Math.sqrt(errors.reduce((sum, { error }) => sum + error * error, 0) / errors.length);
+  errors.length === 0
+    ? null
+    : Math.sqrt(errors.reduce((sum, { error }) => sum + error * error, 0) / errors.length);
 
 function localDay(at: Date, zone: string): string {
   const { year, month, day } = wallClock(at, zone);

@@ -9,7 +9,15 @@ import type { Actor, Origin } from '../../http/request.ts';
 import { toWire } from '../../http/wire.ts';
 import { stale } from '../../http/stale.ts';
 import { recordAudit } from '../audit/service.ts';
-import { addPerson, endSessions, findPersonByEmail, listPeople, replaceRoles, useUpLinks } from './repo.ts';
+import {
+  addPerson,
+  endSessions,
+  findPersonByEmail,
+  listPeople,
+  openSiteIds,
+  replaceRoles,
+  useUpLinks,
+} from './repo.ts';
 import { queueLinkMail } from './sign-in.ts';
 
 type NewPerson = z.output<(typeof people)['people.add']['body']>;

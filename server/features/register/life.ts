@@ -1,9 +1,11 @@
+import { and, eq } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { Sheet } from '../../../shared/contracts/register.ts';
 import { mayDecide } from '../../../shared/rules/permissions.ts';
 import type { Context } from '../../context.ts';
-import { lifeStates } from '../../db/schema/index.ts';
+import { lifeStates, softSensorStatus } from '../../db/schema/index.ts';
 import { type Permitted, lockRow } from '../../http/rows.ts';
+import { recountSite } from '../board/summary.ts';
 import type { SensorRow } from '../estimates/repo.ts';
 import { lifeNow } from '../judging/repo.ts';
 import { note } from './note.ts';
@@ -58,6 +60,11 @@ async function changeLife(
     if (refused) throw new AppError('conflict', refused);
     const key = { siteId: row.siteId, softSensorId: row.id, recordedBy: by.actor.id };
     await tx.insert(lifeStates).values({ ...key, state, reason, effectiveFrom: context.clock() });
+    await tx
+      .update(softSensorStatus)
+      .set({ inService: state === 'in-service' })
+      .where(and(eq(softSensorStatus.siteId, row.siteId), eq(softSensorStatus.softSensorId, row.id)));
+    await recountSite(tx, row.siteId, context.clock());
     await note(
       context,
       tx,

@@ -55,16 +55,12 @@ export async function getUnit(db: Queryable, siteId: number, id: number) {
   return row!;
 }
 
-export async function findArea(
-  db: Queryable,
-  siteId: number,
-  id: number,
-  lock?: 'locked',
-): Promise<AreaRow | null> {
-  const query = db
+/** Keeps the area as it is until the transaction ends. */
+export async function holdArea(db: Queryable, siteId: number, id: number): Promise<AreaRow | null> {
+  const [row] = await db
     .select()
     .from(areas)
-    .where(and(eq(areas.siteId, siteId), eq(areas.id, id)));
-  const [row] = lock ? await query.for('share') : await query;
+    .where(and(eq(areas.siteId, siteId), eq(areas.id, id)))
+    .for('share');
   return row ?? null;
 }

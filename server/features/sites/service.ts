@@ -10,7 +10,7 @@ import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
 import { toWire } from '../../http/wire.ts';
 import { recordAudit } from '../audit/service.ts';
-import { type AreaRow, type SiteRow, type UnitRow, findArea, getSite, getUnit } from './repo.ts';
+import { type AreaRow, type SiteRow, type UnitRow, holdArea, getSite, getUnit } from './repo.ts';
 
 interface By {
   actor: Actor;
@@ -140,9 +140,8 @@ export async function changeUnit(
   });
 }
 
-/** Locks the area, so that it isn't archived at the same moment. */
 async function refuseArea(tx: Tx, siteId: number, areaId: number): Promise<void> {
-  const area = await findArea(tx, siteId, areaId, 'locked');
+  const area = await holdArea(tx, siteId, areaId);
   if (area && !area.archivedAt) return;
   const message = area
     ? `The area ${area.name} is archived. Take it back first, or choose another.`
