@@ -22,7 +22,12 @@ export default defineConfig(({ isSsrBuild }) => ({
     reporters: ['default', './tests/support/plain-reporter.ts'],
     maxWorkers: 2,
     projects: [
-      { test: { name: 'unit', include: ['tests/unit/**/*.test.ts', 'tests/reference/**/*.test.ts', 'tests/*.test.ts'] } },
+      {
+        test: {
+          name: 'unit',
+          include: ['tests/unit/**/*.test.ts', 'tests/reference/**/*.test.ts', 'tests/*.test.ts'],
+        },
+      },
       {
         plugins: plugins(),
         test: { name: 'client', environment: 'happy-dom', include: ['tests/client/**/*.test.ts'] },
@@ -38,9 +43,17 @@ export default defineConfig(({ isSsrBuild }) => ({
       },
       {
         test: {
+          name: 'start',
+          include: ['tests/start/**/*.test.ts'],
+          testTimeout: 60_000,
+          hookTimeout: 60_000,
+        },
+      },
+      {
+        test: {
           name: 'e2e',
           include: ['tests/e2e/**/*.test.ts'],
-          globalSetup: ['tests/support/template-database.ts', 'tests/support/built-client.ts'],
+          globalSetup: ['tests/support/template-database.ts'],
           testTimeout: 120_000,
           hookTimeout: 120_000,
         },

@@ -1,23 +1,15 @@
-import { randomUUID } from 'node:crypto';
 import type { Express } from 'express';
 import { runOnce } from 'graphile-worker';
-import pg from 'pg';
-import pino from 'pino';
 import request from 'supertest';
-import { afterAll, beforeAll, inject } from 'vitest';
 import { hashPassword } from '../../server/auth/password.ts';
 import { createApp } from '../../server/app.ts';
 import type { Context } from '../../server/context.ts';
-import { createDb, createPool } from '../../server/db/client.ts';
 import { persons, siteRoles } from '../../server/db/schema/index.ts';
 import { refreshSpan } from '../../server/features/tags/spans.ts';
-import { readConfig } from '../../server/env.ts';
-import { type ComputePool, createComputePool } from '../../server/jobs/compute-pool.ts';
 import { taskList } from '../../server/jobs/tasks.ts';
 import { quietLogger } from '../../server/jobs/quiet-logger.ts';
-import { type LocalMailServer, startLocalMailServer } from '../../server/mail/local-server.ts';
 import type { Role } from '../../shared/contracts/access.ts';
-import { databaseUrl } from './database-url.ts';
+import { useTestContext } from './test-context.ts';
 
 export const password = 'a long enough password';
 let passwordHash: Promise<string> | undefined;
@@ -45,34 +37,14 @@ export const origin = 'http://127.0.0.1:4600';
 
 /** Makes a test server for the calling file: one clone of the template database, dropped at the end. */
 export function useServer(): TestServer {
-  const name = `cupel_test_${randomUUID().replaceAll('-', '')}`;
   const server = { now: { value: null } } as unknown as TestServer;
-  let admin: pg.Client;
-  let mail: LocalMailServer;
-  let compute: ComputePool;
-
-  beforeAll(async () => {
-    admin = new pg.Client({ connectionString: databaseUrl('postgres') });
-    await admin.connect();
-    await admin.query(`create database ${name} template ${inject('templateDatabase')}`);
-    const log = pino({ level: process.env.LOG_LEVEL ?? 'silent' });
-    const config = readConfig({ DATABASE_URL: databaseUrl(name), NODE_ENV: 'test' });
-    const pool = createPool(config.databaseUrl, log, 6);
-    const clock = () => server.now.value ?? new Date();
-    compute = createComputePool(config);
-    const bare: Context = { config, pool, db: createDb(pool), log, clock, compute };
-    mail = await startLocalMailServer(bare);
-    server.context = { ...bare, config: { ...config, smtpUrl: mail.url } };
-    server.app = createApp(server.context, { signInAttempts: 500 });
-  });
-  afterAll(async () => {
-    await mail?.stop();
-    await compute?.stop();
-    await server.context?.pool.end();
-    await admin?.query(`drop database if exists ${name} with (force)`);
-    await admin?.end();
-  });
-
+  useTestContext(
+    () => server.now.value ?? new Date(),
+    (context) => {
+      server.context = context;
+      server.app = createApp(context, { signInAttempts: 500 });
+    },
+  );
   server.drainJobs = () =>
     runOnce({
       pgPool: server.context.pool,

@@ -1,0 +1,179 @@
+import request from 'supertest';
+import { makeLink } from '../../server/features/people/sign-in.ts';
+import { persons } from '../../server/db/schema/index.ts';
+import type { EndpointName } from '../../shared/contracts/index.ts';
+import { sheetFields } from './sheet-fields.ts';
+import { addSiteRows, type SiteRows } from './site-rows.ts';
+import { type Agent, origin, password, type TestServer } from './server.ts';
+
+/** What a change is made with: rows of a site, and one person for each role. */
+export interface Scene extends SiteRows {
+  server: TestServer;
+  administrator: Agent;
+  engineer: Agent;
+  technician: Agent;
+  manager: Agent;
+}
+
+export async function makeScene(server: TestServer): Promise<Scene> {
+  const [someone] = await server.context.db
+    .insert(persons)
+    .values({ name: 'Somebody Else', email: 'somebody.else@cupel.example' })
+    .returning();
+  const rows = await addSiteRows(server.context.db, 'Tarnby', someone!.id);
+  const at = (role: 'engineer' | 'technician' | 'manager') =>
+    server.signedIn({ name: `The ${role}`, roles: [{ siteId: rows.siteId, role }] });
+  return {
+    ...rows,
+    server,
+    administrator: await server.signedIn({ name: 'The administrator', administrator: true }),
+    engineer: await at('engineer'),
+    technician: await at('technician'),
+    manager: await at('manager'),
+  };
+}
+
+type Send = (scene: Scene, found: string) => request.Test;
+
+const v1 = (path: string) => `/api/v1${path}`;
+const nobody = (scene: Scene) => request(scene.server.app);
+const now = { archived: false, version: 1 };
+const external = { form: 'external', holdLimitMs: 600_000, residualSd: null };
+const csv = { delimiter: ',', decimal: '.', headerLine: 1, dateOrder: 'iso', zone: 'UTC' };
+const layout = { ...csv, shape: 'wide', timeColumn: 0 };
+const mapping = {
+  ...csv,
+  delimiter: ';',
+  decimal: ',',
+  unit: '°C',
+  columns: { sampleNumber: 0, takenAt: 1, reportedAt: null, value: 2, unit: null, samplePoint: null },
+};
+const period = { from: '2026-10-01T00:00:00Z', to: '2026-11-02T00:00:00Z' };
+
+/** One request for every endpoint that changes something, in an order in which each can succeed. */
+export const changes: Partial<Record<EndpointName, Send>> = {
+  'auth.signIn': (s) =>
+    nobody(s).post(v1('/session')).set('Origin', origin).send({ email: s.manager.email, password }),
+  'auth.askForLink': (s) =>
+    nobody(s).post(v1('/password-links')).set('Origin', origin).send({ email: s.technician.email }),
+  'auth.useLink': (s, token) => s.technician.post(v1('/password-links/use')).send({ token, password }),
+  'people.add': (s) =>
+    s.administrator
+      .post(v1('/people'))
+      .send({ name: 'New Person', email: 'new@cupel.example', administrator: false, roles: [] }),
+  'people.change': (s) =>
+    s.administrator.put(v1(`/people/${s.technician.personId}`)).send({
+      name: 'Renamed',
+      email: s.technician.email,
+      administrator: false,
+      roles: [{ siteId: s.siteId, role: 'technician' }],
+      deactivated: false,
+      version: 1,
+    }),
+  'people.sendLink': (s) =>
+    s.administrator.post(v1(`/people/${s.technician.personId}/password-links`)).send({}),
+  'sites.add': (s) => s.administrator.post(v1('/sites')).send({ name: 'New Works', zone: 'UTC' }),
+  'sites.change': (s) =>
+    s.administrator.put(v1(`/sites/${s.siteId}`)).send({ name: 'Tarnby Works', zone: 'UTC', ...now }),
+  'areas.add': (s) => s.engineer.post(v1(`/sites/${s.siteId}/areas`)).send({ name: 'New area' }),
+  'areas.change': (s) => s.engineer.put(v1(`/areas/${s.areaId}`)).send({ name: 'Hot end', ...now }),
+  'units.add': (s) =>
+    s.engineer.post(v1(`/sites/${s.siteId}/units`)).send({ name: 'Kiln', areaId: s.areaId }),
+  'units.change': (s) =>
+    s.engineer.put(v1(`/units/${s.unitId}`)).send({ name: 'Furnace 1', areaId: s.areaId, ...now }),
+  'tags.add': (s) => s.engineer.post(v1(`/sites/${s.siteId}/tags`)).send({ tags: [tag('TI-9')] }),
+  'tags.change': (s) => s.engineer.put(v1(`/tags/${s.tagId}`)).send({ ...tag('TI-10'), ...now }),
+  'tags.removeReadings': (s) =>
+    s.engineer.post(v1(`/tags/${s.tagId}/removals`)).send({ ...period, reason: 'Trial' }),
+  'runs.cancel': (s) => s.engineer.post(v1(`/runs/${s.runId}/cancel`)).send({}),
+  'register.add': (s) =>
+    s.engineer.post(v1(`/sites/${s.siteId}/soft-sensors`)).send(sheetFields({ unitId: s.unitId })),
+  'register.change': (s) =>
+    s.engineer
+      .put(v1(`/soft-sensors/${s.softSensorId}`))
+      .send({ fields: sheetFields({ unitId: s.unitId, tagName: 'TY-9' }), version: 1 }),
+  'drafts.fit': (s) =>
+    s.engineer.post(v1(`/soft-sensors/${s.softSensorId}/draft/fit`)).send({ ...period, version: 1 }),
+  'drafts.save': (s) =>
+    s.engineer.put(v1(`/soft-sensors/${s.softSensorId}/draft`)).send({ model: external, version: 1 }),
+  'revisions.withdraw': (s) => s.engineer.post(v1(`/revisions/${s.revisionId}/withdrawal`)).send({}),
+  'revisions.propose': (s) =>
+    s.engineer
+      .post(v1(`/soft-sensors/${s.softSensorId}/revisions`))
+      .send({ version: 2, reason: 'Arrives from the control system', changeReference: '' }),
+  'revisions.decide': (s, id) =>
+    s.manager.post(v1(`/revisions/${id}/decision`)).send({ decision: 'approved', reason: '' }),
+  'life.suspend': (s) =>
+    s.technician.post(v1(`/soft-sensors/${s.softSensorId}/suspension`)).send({ reason: 'Reads nonsense' }),
+  'life.putBack': (s) => s.manager.delete(v1(`/soft-sensors/${s.softSensorId}/suspension`)),
+  'replays.start': (s) =>
+    s.engineer
+      .post(v1(`/soft-sensors/${s.softSensorId}/replays`))
+      .send({ ...period, judgedFrom: period.from, updateFactor: 0.2, model: 'in-force' }),
+  'samplePoints.add': (s) =>
+    s.technician.post(v1(`/sites/${s.siteId}/sample-points`)).send({ name: 'KX-1', unitId: null }),
+  'samplePoints.change': (s) =>
+    s.technician.put(v1(`/sample-points/${s.samplePointId}`)).send({ name: 'KX-2', unitId: null, ...now }),
+  'methods.add': (s) => s.technician.post(v1(`/sites/${s.siteId}/methods`)).send(method('Pyrometry')),
+  'methods.change': (s) =>
+    s.technician.put(v1(`/methods/${s.methodId}`)).send({ ...method('Titration'), ...now }),
+  'sampleImports.upload': (s) =>
+    s.technician
+      .post(v1(`/sites/${s.siteId}/sample-imports`))
+      .attach('file', Buffer.from('sample;taken;value\r\nS-1;2026-11-01T06:30:00Z;301,5\r\n'), 'lab.csv'),
+  'sampleImports.dryRun': (s, id) =>
+    s.technician
+      .put(v1(`/sample-imports/${id}/mapping`))
+      .send({ mapping: { ...mapping, samplePointId: s.samplePointId, methodId: null }, version: 1 }),
+  'sampleImports.commit': (s, id) =>
+    s.technician.post(v1(`/sample-imports/${id}/commit`)).send({ version: 2 }),
+  'sampleImports.undo': (s, id) => s.technician.post(v1(`/sample-imports/${id}/undo`)).send({}),
+  'history.upload': (s) =>
+    s.engineer
+      .post(v1(`/sites/${s.siteId}/history-imports`))
+      .attach('file', Buffer.from('time,TI-10\r\n2026-11-01T06:30:00Z,301.5\r\n'), 'history.csv'),
+  'history.start': (s, id) =>
+    s.engineer.post(v1(`/history-imports/${id}/start`)).send({
+      layout: { ...layout, columns: [{ column: 1, tagId: s.tagId }] },
+      replaceExisting: false,
+    }),
+  'history.resume': (s, id) => s.engineer.post(v1(`/history-imports/${id}/resume`)).send({}),
+  'auth.signOut': (s) => s.manager.delete(v1('/session')),
+};
+
+/** What some of them need to find out first. */
+export const findings: Partial<Record<EndpointName, (scene: Scene) => Promise<string>>> = {
+  async 'auth.useLink'(s) {
+    const { context } = s.server;
+    const link = await makeLink(context, context.db, 'reset-password', s.technician.personId);
+    return link.split('#')[1]!;
+  },
+  async 'revisions.decide'(s) {
+    const { body } = await s.engineer.get(v1(`/soft-sensors/${s.softSensorId}/revisions`));
+    return String(body.rows[0].id);
+  },
+  'sampleImports.dryRun': (s) => newest(s, 'sample-imports'),
+  'sampleImports.commit': (s) => newest(s, 'sample-imports'),
+  'sampleImports.undo': (s) => newest(s, 'sample-imports'),
+  'history.start': (s) => newest(s, 'history-imports'),
+  async 'history.resume'(s) {
+    const id = await newest(s, 'history-imports');
+    const { pool } = s.server.context;
+    await pool.query(`update history_imports set state = 'cancelled', finished_at = now() where id = $1`, [
+      id,
+    ]);
+    await pool.query(`update runs set state = 'cancelled', finished_at = now() where state = 'waiting'`);
+    return id;
+  },
+};
+
+const newest = async (s: Scene, list: string): Promise<string> =>
+  String((await s.engineer.get(v1(`/sites/${s.siteId}/${list}`))).body.rows[0].id);
+
+function tag(name: string) {
+  return { name, description: '', unit: '°C', unitId: null, rangeLow: null, rangeHigh: null };
+}
+
+function method(name: string) {
+  return { name, quantity: '', unit: '°C', repeatability: null, reproducibility: null };
+}
