@@ -48,3 +48,13 @@ export async function listAudit(db: Queryable, siteIds: number[] | 'every', filt
     .offset((filter.page - 1) * filter.perPage);
   return { rows, total: await db.$count(auditEntries, where) };
 }
+
+export async function findLastEntry(db: Queryable, entity: string, entityId: string) {
+  const [entry] = await db
+    .select({ personName: auditEntries.personName, at: auditEntries.at })
+    .from(auditEntries)
+    .where(and(eq(auditEntries.entity, entity), eq(auditEntries.entityId, entityId)))
+    .orderBy(desc(auditEntries.at), desc(auditEntries.id))
+    .limit(1);
+  return entry ?? null;
+}

@@ -1,6 +1,8 @@
 import type { Tx } from '../../db/client.ts';
 import { auditEntries } from '../../db/schema/index.ts';
 import type { Actor, Origin } from '../../http/request.ts';
+import type { LastSave } from '../../http/stale.ts';
+import { findLastEntry } from './repo.ts';
 
 export interface AuditNote {
   at: Date;
@@ -49,4 +51,10 @@ export async function recordAudit(tx: Tx, note: AuditNote): Promise<void> {
     reason: note.reason ?? '',
     requestId: note.origin.requestId,
   });
+}
+
+/** Who changed a thing last, for somebody who meant to change it too. */
+export async function lastSaveOf(tx: Tx, entity: string, entityId: number): Promise<LastSave | null> {
+  const entry = await findLastEntry(tx, entity, String(entityId));
+  return entry && { savedBy: entry.personName, savedAt: entry.at.toISOString() };
 }

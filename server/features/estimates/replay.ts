@@ -2,9 +2,10 @@ import { eq } from 'drizzle-orm';
 import type pg from 'pg';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { PairedError, ReplayFigures } from '../../../shared/contracts/judging.ts';
-import type { Model } from '../../../shared/contracts/models.ts';
 import { type Grid, type GridColumn, gridWithin } from '../../../shared/numerics/grid.ts';
-import { type EstimateSeries, pairAt } from '../../../shared/numerics/pairing.ts';
+import type { EstimateSeries } from '../../../shared/numerics/pairing.ts';
+import { pairSample } from '../../../shared/rules/pair-sample.ts';
+import { toPair } from '../judging/pairing.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
 import { judge } from '../../../shared/rules/judgement.ts';
 import { withClient } from '../../db/client.ts';
@@ -162,25 +163,18 @@ async function pairReplay(
 ): Promise<PairedError[]> {
   const samples = await samplesBetween(db, sensor, replay.judgedFrom, replay.toAt);
   return samples.map((sample) => {
-    const atMs = sample.takenAt!.getTime() - sensor.transportDelayMs;
-    const options = { holdLimitMs: replay.model.holdLimitMs, windowMs: sensor.pairingWindowMs };
-    const paired = pairAt(series, atMs, options);
-    const error = paired.ok ? paired.estimate - sample.value : null;
-    const notCounted = !paired.ok
-      ? 'no-estimate'
-      : sample.qualifier
-        ? 'censored'
-        : sample.heldSince
-          ? 'held'
-          : null;
+    const { estimate, error, notCounted } = pairSample(series, toPair(sample), {
+      ...sensor,
+      holdLimitMs: replay.model.holdLimitMs,
+    });
     return {
       sampleId: sample.id,
       sampleNumber: sample.sampleNumber,
       takenAt: sample.takenAt!.toISOString(),
       reportedAt: sample.reportedAt.toISOString(),
       reference: sample.value,
-      estimate: paired.ok ? paired.estimate : null,
-      estimateSd: paired.ok ? residualSd(replay.model) : null,
+      estimate,
+      estimateSd: estimate === null ? null : replay.model.residualSd,
       error,
       corrected: error,
       allowed: allowedErrorAt(
@@ -192,5 +186,3 @@ async function pairReplay(
     };
   });
 }
-
-const residualSd = (model: Model): number | null => model.residualSd;

@@ -1,5 +1,5 @@
 import type pg from 'pg';
-import { pairAt } from '../../../shared/numerics/pairing.ts';
+import { pairSample, steadyReadings } from '../../../shared/rules/pair-sample.ts';
 import type { Tx } from '../../db/client.ts';
 import { pairs } from '../../db/schema/index.ts';
 import { type RevisionRow, type SensorRow, approvedRevisions } from '../estimates/repo.ts';
@@ -59,7 +59,10 @@ async function pairMaker(
   const times = samples.flatMap((sample) =>
     sample.takenAt ? [sample.takenAt.getTime() - sensor.transportDelayMs] : [],
   );
-  const margin = holdLimitOf(revisions.at(-1)) + sensor.pairingWindowMs;
+  const margin =
+    holdLimitOf(revisions.at(-1)) +
+    sensor.pairingWindowMs +
+    steadyReadings * stepOf(revisions.at(-1), sensor);
   const series = await readSeries(
     client,
     { siteId: sensor.siteId, tagId: sensor.estimateTagId },
@@ -80,30 +83,27 @@ async function pairMaker(
       origin: revision?.recorded ? ('recorded' as const) : ('replayed' as const),
       computedAt: now,
     };
-    if (sample.takenAt === null) return { ...base, notCounted: 'date-without-time' };
-    const paired = pairAt(series, takenMs - sensor.transportDelayMs, {
-      holdLimitMs: holdLimitOf(revision?.row),
-      windowMs: sensor.pairingWindowMs,
-    });
-    if (!paired.ok) return { ...base, notCounted: 'no-estimate' };
-    return {
-      ...base,
-      estimate: paired.estimate,
-      estimateSd: paired.sd,
-      spread: paired.spread,
-      error: paired.estimate - sample.value,
-      notCounted: whyNotCounted(sample),
-    };
+    const paired = pairSample(series, toPair(sample), { ...sensor, holdLimitMs: holdLimitOf(revision?.row) });
+    const { sd, ...rest } = paired;
+    return { ...base, ...rest, estimateSd: sd };
   };
 }
 
-function whyNotCounted(sample: SampleRow): string | null {
-  if (sample.qualifier !== null) return 'censored';
-  if (sample.heldSince !== null) return 'held';
-  return null;
-}
+/** A sample as the pairing rule sees it. */
+export const toPair = (sample: SampleRow) => ({
+  takenMs: sample.takenAt?.getTime() ?? null,
+  value: sample.value,
+  censored: sample.qualifier !== null,
+  held: sample.heldSince !== null,
+});
 
 const holdLimitOf = (revision: RevisionRow | undefined): number => revision?.model.holdLimitMs ?? 0;
+
+/** Usual distance of two readings of the estimate: the steady-state test looks some of them back. */
+function stepOf(revision: RevisionRow | undefined, sensor: SensorRow): number {
+  if (!sensor.steadyStateGate || !revision) return 0;
+  return revision.model.form === 'regression' ? revision.model.stepMs : revision.model.holdLimitMs;
+}
 
 /** The revision in force at an instant; before the first one, the first, whose estimate there was computed afterwards. */
 function revisionAt(

@@ -8,7 +8,7 @@ import { persons } from '../../db/schema/index.ts';
 import type { Actor, Origin } from '../../http/request.ts';
 import { toWire } from '../../http/wire.ts';
 import { stale } from '../../http/stale.ts';
-import { recordAudit } from '../audit/service.ts';
+import { lastSaveOf, recordAudit } from '../audit/service.ts';
 import {
   addPerson,
   endSessions,
@@ -66,7 +66,8 @@ export async function changePerson(
     // Two administrators who take each other's right away at the same moment would leave none.
     await tx.execute(sql`select pg_advisory_xact_lock(hashtext('cupel-administrators'))`);
     const before = await personNow(tx, personId);
-    if (before.version !== body.version) throw stale('person', before);
+    if (before.version !== body.version)
+      throw stale('person', before, await lastSaveOf(tx, 'person', personId));
     await refuseTakenAddress(tx, body.email, personId);
     await refuseOtherSites(tx, body.roles);
     if (!body.administrator || body.deactivated) await refuseLastAdministrator(tx, personId);

@@ -9,7 +9,7 @@ import type { Actor, Origin } from '../../http/request.ts';
 import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
 import { toWire } from '../../http/wire.ts';
-import { recordAudit } from '../audit/service.ts';
+import { lastSaveOf, recordAudit } from '../audit/service.ts';
 import { type AreaRow, type SiteRow, type UnitRow, holdArea, getSite, getUnit } from './repo.ts';
 
 interface By {
@@ -43,7 +43,8 @@ export async function changeSite(
   return context.db.transaction(async (tx) => {
     const locked = await lockRow(tx, 'site', row);
     const before = await getSite(tx, row.id);
-    if (locked.version !== body.version) throw stale('site', toWire(before));
+    if (locked.version !== body.version)
+      throw stale('site', toWire(before), await lastSaveOf(tx, 'site', row.id));
     await tx
       .update(sites)
       .set({
@@ -80,7 +81,8 @@ export async function changeArea(
 ): Promise<Area> {
   return context.db.transaction(async (tx) => {
     const before = await lockRow(tx, 'area', row);
-    if (before.version !== body.version) throw stale('area', toWire({ ...before }));
+    if (before.version !== body.version)
+      throw stale('area', toWire({ ...before }), await lastSaveOf(tx, 'area', row.id));
     if (body.archived && !before.archivedAt) await refuseWithUnits(tx, before);
     const [after] = await tx
       .update(areas)
@@ -123,7 +125,8 @@ export async function changeUnit(
   return context.db.transaction(async (tx) => {
     const locked = await lockRow(tx, 'unit', row);
     const before = await getUnit(tx, row.siteId, row.id);
-    if (locked.version !== body.version) throw stale('unit', toWire(before));
+    if (locked.version !== body.version)
+      throw stale('unit', toWire(before), await lastSaveOf(tx, 'unit', row.id));
     if (!body.archived || body.areaId !== locked.areaId) await refuseArea(tx, row.siteId, body.areaId);
     await tx
       .update(units)

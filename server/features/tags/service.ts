@@ -9,7 +9,7 @@ import type { Actor, Origin } from '../../http/request.ts';
 import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
 import { toWire } from '../../http/wire.ts';
-import { recordAudit } from '../audit/service.ts';
+import { lastSaveOf, recordAudit } from '../audit/service.ts';
 import { readingsChanged } from '../history/changed.ts';
 import { getUnit, type SiteRow } from '../sites/repo.ts';
 import { archivedAt } from '../sites/service.ts';
@@ -69,7 +69,8 @@ export async function changeTag(
   return context.db.transaction(async (tx) => {
     const locked = await lockRow(tx, 'tag', row);
     const [before] = await listTags(tx, row.siteId, { tagId: row.id });
-    if (locked.version !== body.version) throw stale('tag', toWire(before!));
+    if (locked.version !== body.version)
+      throw stale('tag', toWire(before!), await lastSaveOf(tx, 'tag', row.id));
     refuseEstimate(locked);
     await refuseForeignUnit(tx, row.siteId, body.unitId, 'unitId');
     const { archived, version, ...values } = body;
