@@ -1,10 +1,31 @@
 import { quasar, transformAssetUrls } from '@quasar/vite-plugin';
 import vue from '@vitejs/plugin-vue';
+import type { Plugin } from 'vite';
 import { defineConfig } from 'vitest/config';
 import { quasarVite } from './quasar.config.ts';
+import type { EndpointSpec } from './shared/contracts/endpoint.ts';
+import { endpoints } from './shared/contracts/index.ts';
 
 const devServerPort = Number(process.env.PORT ?? 4600);
-const plugins = () => [vue({ template: { transformAssetUrls } }), quasar(quasarVite)];
+/**
+ * The client needs of the endpoint table only where each endpoint is; its schemas, and the library that runs them, stay
+ * out of the first load.
+ */
+function endpointAddresses(): Plugin {
+  const id = 'virtual:endpoint-addresses';
+  const addresses = Object.entries(endpoints as Record<string, EndpointSpec>).map(([name, spec]) => [
+    name,
+    [spec.method, spec.path, spec.body !== undefined],
+  ]);
+  return {
+    name: 'cupel-endpoint-addresses',
+    resolveId: (wanted) => (wanted === id ? `\0${id}` : undefined),
+    load: (wanted) =>
+      wanted === `\0${id}` ? `export default ${JSON.stringify(Object.fromEntries(addresses))}` : undefined,
+  };
+}
+
+const plugins = () => [endpointAddresses(), vue({ template: { transformAssetUrls } }), quasar(quasarVite)];
 
 export default defineConfig(({ isSsrBuild }) => ({
   plugins: plugins(),

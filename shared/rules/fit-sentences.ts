@@ -5,7 +5,8 @@ export function fitRefusalSentence(refusal: FitRefusal, period: { from: string; 
   const between = `between ${period.from.slice(0, 10)} and ${period.to.slice(0, 10)}`;
   switch (refusal.reason) {
     case 'not-enough-data':
-      if (!refusal.got) return `There are no samples with all inputs ${between}. Choose a longer period or add samples.`;
+      if (!refusal.got)
+        return `There are no samples with all inputs ${between}. Choose a longer period or add samples.`;
       return `Only ${refusal.got} samples ${between} have all inputs; ${refusal.needed} are needed. Choose a longer period or fewer inputs.`;
     case 'collinear':
       return `${listed(refusal.collinearGroups?.[0] ?? [])} move together exactly, so their coefficients can’t be told apart. Leave one of them out.`;

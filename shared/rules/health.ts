@@ -1,7 +1,8 @@
 import type { Health, HealthReason } from '../contracts/judging.ts';
 import { biasWithInterval } from '../numerics/bias.ts';
 import { holdLast } from '../numerics/hold-last.ts';
-import { bandFactor } from './judgement.ts';
+import { bandFactor } from './band.ts';
+import { severityOf } from './severity.ts';
 
 /** A counted error with the times and the value of its reference; in order of the time taken. */
 export interface CountedError {
@@ -38,11 +39,6 @@ const entersAfter = 2;
 const leavesAfter = 9;
 const errorsForHolding = 30;
 const uncountedShare = 0.3;
-
-const order: readonly Health[] = ['fit', 'watch', 'unproven', 'unfit'];
-
-/** How bad a health is: 0 fit, 1 watch, 2 unproven, 3 unfit. */
-export const severityOf = (health: Health): number => order.indexOf(health);
 
 /**
  * Health of a soft sensor with its reasons, worst first (product rules: Unfit > Unproven > Watch > Fit). Reasons carry

@@ -3,9 +3,7 @@ import { biasWithInterval } from '../numerics/bias.ts';
 import { ewmaChart } from '../numerics/control-charts.ts';
 import { exponentialUpdate } from '../numerics/exponential-update.ts';
 import { holdLast } from '../numerics/hold-last.ts';
-
-/** z of a two-sided 95 % band. */
-export const bandFactor = 1.96;
+import { bandFactor } from './band.ts';
 
 /** Design of the EWMA chart on a sheet: λ 0.2 at 3 SD of z, the usual choice to look at (NIST/SEMATECH 6.3.2.4). */
 export const ewmaDesign = { lambda: 0.2, width: 3 };
@@ -66,10 +64,4 @@ function reasonsOf(pairs: readonly PairedError[]): Judgement['notCounted'] {
     if (notCounted !== null) counts.set(notCounted, (counts.get(notCounted) ?? 0) + 1);
   }
   return [...counts].map(([code, count]) => ({ code, count })).sort((a, b) => b.count - a.count);
-}
-
-/** Lower and upper edge of the 95 % band around an estimate, value ± 1.96 SD; all null where the SD is unknown. */
-export function bandAround(value: readonly (number | null)[], sd: number | null) {
-  const edge = (sign: number) => value.map((at) => (at === null || sd === null ? null : at + sign * bandFactor * sd));
-  return { low: edge(-1), high: edge(1) };
 }

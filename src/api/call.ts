@@ -1,21 +1,29 @@
 import type { z } from 'zod';
-import { endpoints, type EndpointName, type Endpoints } from '../../shared/contracts/index.ts';
+import addresses from 'virtual:endpoint-addresses';
+import type { EndpointName, Endpoints } from '../../shared/contracts/index.ts';
 import type { EndpointSpec, Given } from '../../shared/contracts/endpoint.ts';
 import { ApiProblem } from './problem.ts';
 
 type Wire<E extends EndpointSpec> = z.input<E['reply']>;
 type Part<E extends EndpointSpec, K extends 'params' | 'query' | 'body'> =
-  Given<E, K> extends undefined ? { [P in K]?: undefined } : K extends 'query' ? { query?: Given<E, K> } : { [P in K]: Given<E, K> };
+  Given<E, K> extends undefined
+    ? { [P in K]?: undefined }
+    : K extends 'query'
+      ? { query?: Given<E, K> }
+      : { [P in K]: Given<E, K> };
 type Inputs<E extends EndpointSpec> = Part<E, 'params'> & Part<E, 'query'> & Part<E, 'body'>;
 type Values = Record<string, unknown> | undefined;
 
 /** Calls one endpoint of the table; resolves to its reply, rejects with an ApiProblem. */
-export async function call<N extends EndpointName>(name: N, inputs: Inputs<Endpoints[N]>): Promise<Wire<Endpoints[N]>> {
-  const spec = endpoints[name] as EndpointSpec;
+export async function call<N extends EndpointName>(
+  name: N,
+  inputs: Inputs<Endpoints[N]>,
+): Promise<Wire<Endpoints[N]>> {
+  const [method, path, takesBody] = addresses[name]!;
   const parts = inputs as { params?: Values; query?: Values; body?: unknown };
-  const body = spec.body ? JSON.stringify(parts.body ?? {}) : undefined;
-  const response = await fetch(addressOf(spec, parts.params, parts.query), {
-    method: spec.method,
+  const body = takesBody ? JSON.stringify(parts.body ?? {}) : undefined;
+  const response = await fetch(addressOf(path, parts.params, parts.query), {
+    method,
     credentials: 'same-origin',
     headers: body === undefined ? {} : { 'Content-Type': 'application/json' },
     body,
@@ -28,12 +36,15 @@ export async function call<N extends EndpointName>(name: N, inputs: Inputs<Endpo
 }
 
 /** Address of an endpoint, for links to downloads. */
-export function addressOfEndpoint<N extends EndpointName>(name: N, params: Record<string, string | number>): string {
-  return addressOf(endpoints[name] as EndpointSpec, params, undefined);
+export function addressOfEndpoint<N extends EndpointName>(
+  name: N,
+  params: Record<string, string | number>,
+): string {
+  return addressOf(addresses[name]![1], params, undefined);
 }
 
-function addressOf(spec: EndpointSpec, params: Values, query: Values): string {
-  const path = spec.path.replace(/:(\w+)/g, (_whole, key: string) => encodeURIComponent(String(params?.[key])));
+function addressOf(pattern: string, params: Values, query: Values): string {
+  const path = pattern.replace(/:(\w+)/g, (_whole, key: string) => encodeURIComponent(String(params?.[key])));
   const search = new URLSearchParams();
   for (const [key, value] of Object.entries(query ?? {})) {
     if (value !== undefined && value !== null && value !== '') search.set(key, String(value));
@@ -51,16 +62,17 @@ export function upload<N extends UploadName>(
   file: File,
   onProgress: (share: number) => void = () => {},
 ): Promise<Wire<Endpoints[N]>> {
-  const spec = endpoints[name] as EndpointSpec;
+  const [method, path] = addresses[name]!;
   const form = new FormData();
   form.append('file', file, file.name);
   return new Promise((resolve, reject) => {
     const request = new XMLHttpRequest();
-    request.open(spec.method, addressOf(spec, params as Values, undefined));
+    request.open(method, addressOf(path, params as Values, undefined));
     request.upload.onprogress = (event) => onProgress(event.total > 0 ? event.loaded / event.total : 0);
     request.onerror = () => reject(ApiProblem.offline());
     request.onload = () => {
-      if (request.status >= 200 && request.status < 300) resolve(JSON.parse(request.responseText) as Wire<Endpoints[N]>);
+      if (request.status >= 200 && request.status < 300)
+        resolve(JSON.parse(request.responseText) as Wire<Endpoints[N]>);
       else reject(ApiProblem.from(request.status, request.responseText));
     };
     request.send(form);

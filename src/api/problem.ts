@@ -1,4 +1,4 @@
-import { problem, type Problem } from '../../shared/contracts/errors.ts';
+import type { Problem } from '../../shared/contracts/errors.ts';
 
 /** What the server said when it said no: a sentence, the fields at fault, and what stands now where two people saved. */
 export class ApiProblem extends Error {
@@ -20,16 +20,19 @@ export class ApiProblem extends Error {
 
   static from(status: number, text: string): ApiProblem {
     try {
-      return new ApiProblem(problem.parse(JSON.parse(text)));
+      const said = JSON.parse(text) as Partial<Problem>;
+      if (typeof said.code === 'string' && typeof said.detail === 'string')
+        return new ApiProblem(said as Problem);
     } catch {
-      return new ApiProblem({
-        type: '/problems/unexpected',
-        title: 'No proper answer',
-        status,
-        detail: 'The server gave no proper answer. Try again in a moment; nothing you typed is lost.',
-        code: 'unexpected',
-      });
+      // No problem details: a proxy's page, or nothing at all.
     }
+    return new ApiProblem({
+      type: '/problems/unexpected',
+      title: 'No proper answer',
+      status,
+      detail: 'The server gave no proper answer. Try again in a moment; nothing you typed is lost.',
+      code: 'unexpected',
+    });
   }
 
   static offline(): ApiProblem {
@@ -55,5 +58,9 @@ export function sayError(error: unknown): { title: string; detail: string; refer
     const { title, detail, requestId, code } = error.problem;
     return { title, detail, reference: code === 'unexpected' ? (requestId ?? null) : null };
   }
-  return { title: 'Something went wrong on this page', detail: 'Load the page again; what was saved is safe.', reference: null };
+  return {
+    title: 'Something went wrong on this page',
+    detail: 'Load the page again; what was saved is safe.',
+    reference: null,
+  };
 }

@@ -30,13 +30,19 @@ export const useSessionStore = defineStore('session', () => {
 
   const roleWords = computed(() => {
     if (!self.value) return '';
-    const names = { engineer: 'process engineer', technician: 'laboratory', manager: 'plant manager', reader: 'reader' };
+    const names = {
+      engineer: 'process engineer',
+      technician: 'laboratory',
+      manager: 'plant manager',
+      reader: 'reader',
+    };
     const held = [...new Set(self.value.roles.map(({ role }) => names[role]))];
     return [...held, ...(self.value.administrator ? ['administrator'] : [])].join(', ') || 'no role yet';
   });
 
   /** May the person do this at the site (null: for the company)? */
-  const mayDo = (action: Action, siteId: number | null): boolean => self.value !== null && may(self.value, action, siteId);
+  const mayDo = (action: Action, siteId: number | null): boolean =>
+    self.value !== null && may(self.value, action, siteId);
   /** May the person do this at any site? */
   const mayAnywhere = (action: Action): boolean =>
     mayDo(action, null) || (self.value?.roles ?? []).some(({ siteId }) => mayDo(action, siteId));

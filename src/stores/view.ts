@@ -1,23 +1,27 @@
 import { defineStore } from 'pinia';
 import { ref, watch } from 'vue';
-import { z } from 'zod';
 
 export type Theme = 'light' | 'dark' | 'auto';
 
 const STORAGE_KEY = 'cupel.view';
-const savedView = z.object({
-  theme: z.enum(['light', 'dark', 'auto']).catch('auto'),
-  site: z.string().nullable().catch(null),
-  folded: z.record(z.string(), z.boolean()).catch({}),
-});
+interface SavedView {
+  theme: Theme;
+  site: string | null;
+  folded: Record<string, boolean>;
+}
 
-function readSaved(): z.infer<typeof savedView> {
+function readSaved(): SavedView {
+  const saved: SavedView = { theme: 'auto', site: null, folded: {} };
   try {
-    return savedView.parse(JSON.parse(localStorage.getItem(STORAGE_KEY) ?? '{}'));
+    const found = JSON.parse(localStorage.getItem(STORAGE_KEY) ?? '{}') as Record<string, unknown>;
+    if (found.theme === 'light' || found.theme === 'dark') saved.theme = found.theme;
+    if (typeof found.site === 'string') saved.site = found.site;
+    const folded = Object.entries(found.folded ?? {}).filter(([, value]) => typeof value === 'boolean');
+    saved.folded = Object.fromEntries(folded) as Record<string, boolean>;
   } catch {
     // Storage closed by the browser, or written by something else: start with the defaults.
-    return { theme: 'auto', site: null, folded: {} };
   }
+  return saved;
 }
 
 /** How this person likes to look at Cupel in this browser: theme, chosen site (null: all), folded sections. */

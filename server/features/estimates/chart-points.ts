@@ -1,5 +1,5 @@
 import type { EstimateSeries } from '../../../shared/numerics/pairing.ts';
-import { bandAround } from '../../../shared/rules/judgement.ts';
+import { bandAround } from '../../../shared/rules/band.ts';
 
 const mostBuckets = 1000;
 

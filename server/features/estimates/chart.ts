@@ -1,6 +1,6 @@
 import type { z } from 'zod';
 import type { chartSeries } from '../../../shared/contracts/judging.ts';
-import { bandAround } from '../../../shared/rules/judgement.ts';
+import { bandAround } from '../../../shared/rules/band.ts';
 import type { Context } from '../../context.ts';
 import type { Permitted } from '../../http/rows.ts';
 import { findTag } from '../tags/repo.ts';

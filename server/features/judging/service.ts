@@ -4,15 +4,8 @@ import type { ErrorStripPoint, Health, PairedError, Performance } from '../../..
 import type { Model } from '../../../shared/contracts/models.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
 import { wallClock } from '../../../shared/rules/format.ts';
-import {
-  type CountedError,
-  type HealthInput,
-  allowedOver,
-  biasFigures,
-  biasWindow,
-  healthOf,
-  severityOf,
-} from '../../../shared/rules/health.ts';
+import { type CountedError, type HealthInput, allowedOver, biasFigures, biasWindow, healthOf } from '../../../shared/rules/health.ts';
+import { severityOf } from '../../../shared/rules/severity.ts';
 import { judge } from '../../../shared/rules/judgement.ts';
 import { type Db, type Tx, withClient } from '../../db/client.ts';
 import type { ComputeContext } from '../estimates/context.ts';
