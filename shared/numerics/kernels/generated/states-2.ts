@@ -1,0 +1,116 @@
+// Written by generate.ts from kernel-source.ts; change those, not this.
+import type { FilterWork, SteadyWork } from '../work.ts';
+
+/** Time-varying Kalman filter for 2 states; see FilterKernel in work.ts. */
+// prettier-ignore
+export function filter2(work: FilterWork, from: number, to: number, predicted: boolean): void {
+const { A, B, C, Q, R, H, F, x, P, u, y, z, sd, nis, white, m, p, sums } = work;
+const a0_0 = A[0]!; const a0_1 = A[1]!; const a1_0 = A[2]!; const a1_1 = A[3]!;
+const q0_0 = Q[0]!; const q1_0 = Q[2]!; const q1_1 = Q[3]!;
+const h0 = H[0]!; const h1 = H[1]!;
+let x0 = x[0]!; let x1 = x[1]!;
+let p0_0 = P[0]!; let p1_0 = P[2]!; let p1_1 = P[3]!;
+const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;
+let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;
+for (let k = from; k < to; k++) {
+if (skip) { skip = false; } else {
+let f0 = a0_0 * x0 + a0_1 * x1; let f1 = a1_0 * x0 + a1_1 * x1;
+for (let j = 0, b = 0, i = (k - 1) * p; j < p; j++, b += 2) { const w = u[i++]!; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+x0 = f0; x1 = f1;
+const d0_0 = a0_0 * p0_0 + a0_1 * p1_0; const d0_1 = a0_0 * p1_0 + a0_1 * p1_1; const d1_0 = a1_0 * p0_0 + a1_1 * p1_0; const d1_1 = a1_0 * p1_0 + a1_1 * p1_1;
+p0_0 = q0_0 + d0_0 * a0_0 + d0_1 * a0_1; p1_0 = q1_0 + d1_0 * a0_0 + d1_1 * a0_1; p1_1 = q1_1 + d1_0 * a1_0 + d1_1 * a1_1;
+}
+let nisHere = 0, taken = 0, at = (k - work.yStart) * m;
+for (let j = 0, c = 0; j < m; j++, c += 2) {
+const d = y[at++]!;
+if (d !== d) continue;
+const r = R[j]!;
+const c0 = C[c]!; const c1 = C[c + 1]!;
+const t0 = p0_0 * c0 + p1_0 * c1; const t1 = p1_0 * c0 + p1_1 * c1;
+const S = r + c0 * t0 + c1 * t1;
+const w = 1 / S, v = d - (c0 * x0 + c1 * x1);
+nisHere += v * v * w; product *= S; taken++;
+if (wantWhite) white[k * m + j] = v * Math.sqrt(w);
+const l0 = t0 * w; const l1 = t1 * w;
+x0 += l0 * v; x1 += l1 * v;
+const m0_0 = p0_0 - l0 * t0; const m0_1 = p1_0 - l0 * t1; const m1_0 = p1_0 - l1 * t0; const m1_1 = p1_1 - l1 * t1;
+const g0 = m0_0 * c0 + m0_1 * c1 - r * l0; const g1 = m1_0 * c0 + m1_1 * c1 - r * l1;
+p0_0 = m0_0 - g0 * l0; p1_0 = m1_0 - g1 * l0; p1_1 = m1_1 - g1 * l1;
+}
+if (wantNis) nis[k] = taken > 0 ? nisHere : NaN;
+readings += taken; quad += nisHere;
+if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }
+let e = h0 * x0 + h1 * x1;
+for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;
+z[k] = e;
+if (wantSd) {
+const e0 = p0_0 * h0 + p1_0 * h1; const e1 = p1_0 * h0 + p1_1 * h1;
+const variance = h0 * e0 + h1 * e1;
+sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }
+}
+x[0] = x0; x[1] = x1;
+P[0] = p0_0; P[2] = p1_0; P[1] = p1_0; P[3] = p1_1;
+sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;
+}
+
+/** Fixed-gain filter for 2 states and 1 reading; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady2x1(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m1_0 = M[2]!; const m1_1 = M[3]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!;
+const w0_0 = W[0]!;
+const h0 = H[0]!; const h1 = H[1]!;
+const g0 = G[0]!, o0 = present[0]!;
+let x0 = x[0]!; let x1 = x[1]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!;
+if (y0 !== y0) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1);
+if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
+let e = (h0 * x0 + h1 * x1) + (g0 * v0);
+let f0 = (m0_0 * x0 + m0_1 * x1) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1) + (k0_1 * y0);
+for (let j = 0, b = 0; j < p; j++, b += 2) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1;
+}
+x[0] = x0; x[1] = x1;
+sums[2]! += quad;
+return k;
+}
+
+/** Fixed-gain filter for 2 states and 2 readings; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady2x2(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m1_0 = M[2]!; const m1_1 = M[3]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c1_0 = C[2]!; const c1_1 = C[3]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k1_0 = K[2]!; const k1_1 = K[3]!;
+const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
+const h0 = H[0]!; const h1 = H[1]!;
+const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
+let x0 = x[0]!; let x1 = x[1]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!; const y1 = y[at + o1]!;
+if (y0 !== y0 || y1 !== y1) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1); const v1 = y1 - (c1_0 * x0 + c1_1 * x1);
+if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
+let e = (h0 * x0 + h1 * x1) + (g0 * v0 + g1 * v1);
+let f0 = (m0_0 * x0 + m0_1 * x1) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1) + (k0_1 * y0 + k1_1 * y1);
+for (let j = 0, b = 0; j < p; j++, b += 2) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1;
+}
+x[0] = x0; x[1] = x1;
+sums[2]! += quad;
+return k;
+}

@@ -1,0 +1,147 @@
+// Written by generate.ts from kernel-source.ts; change those, not this.
+import type { FilterWork, SteadyWork } from '../work.ts';
+
+/** Time-varying Kalman filter for 4 states; see FilterKernel in work.ts. */
+// prettier-ignore
+export function filter4(work: FilterWork, from: number, to: number, predicted: boolean): void {
+const { A, B, C, Q, R, H, F, x, P, u, y, z, sd, nis, white, m, p, sums } = work;
+const a0_0 = A[0]!; const a0_1 = A[1]!; const a0_2 = A[2]!; const a0_3 = A[3]!; const a1_0 = A[4]!; const a1_1 = A[5]!; const a1_2 = A[6]!; const a1_3 = A[7]!; const a2_0 = A[8]!; const a2_1 = A[9]!; const a2_2 = A[10]!; const a2_3 = A[11]!; const a3_0 = A[12]!; const a3_1 = A[13]!; const a3_2 = A[14]!; const a3_3 = A[15]!;
+const q0_0 = Q[0]!; const q1_0 = Q[4]!; const q1_1 = Q[5]!; const q2_0 = Q[8]!; const q2_1 = Q[9]!; const q2_2 = Q[10]!; const q3_0 = Q[12]!; const q3_1 = Q[13]!; const q3_2 = Q[14]!; const q3_3 = Q[15]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
+let p0_0 = P[0]!; let p1_0 = P[4]!; let p1_1 = P[5]!; let p2_0 = P[8]!; let p2_1 = P[9]!; let p2_2 = P[10]!; let p3_0 = P[12]!; let p3_1 = P[13]!; let p3_2 = P[14]!; let p3_3 = P[15]!;
+const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;
+let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;
+for (let k = from; k < to; k++) {
+if (skip) { skip = false; } else {
+let f0 = a0_0 * x0 + a0_1 * x1 + a0_2 * x2 + a0_3 * x3; let f1 = a1_0 * x0 + a1_1 * x1 + a1_2 * x2 + a1_3 * x3; let f2 = a2_0 * x0 + a2_1 * x1 + a2_2 * x2 + a2_3 * x3; let f3 = a3_0 * x0 + a3_1 * x1 + a3_2 * x2 + a3_3 * x3;
+for (let j = 0, b = 0, i = (k - 1) * p; j < p; j++, b += 4) { const w = u[i++]!; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+x0 = f0; x1 = f1; x2 = f2; x3 = f3;
+const d0_0 = a0_0 * p0_0 + a0_1 * p1_0 + a0_2 * p2_0 + a0_3 * p3_0; const d0_1 = a0_0 * p1_0 + a0_1 * p1_1 + a0_2 * p2_1 + a0_3 * p3_1; const d0_2 = a0_0 * p2_0 + a0_1 * p2_1 + a0_2 * p2_2 + a0_3 * p3_2; const d0_3 = a0_0 * p3_0 + a0_1 * p3_1 + a0_2 * p3_2 + a0_3 * p3_3; const d1_0 = a1_0 * p0_0 + a1_1 * p1_0 + a1_2 * p2_0 + a1_3 * p3_0; const d1_1 = a1_0 * p1_0 + a1_1 * p1_1 + a1_2 * p2_1 + a1_3 * p3_1; const d1_2 = a1_0 * p2_0 + a1_1 * p2_1 + a1_2 * p2_2 + a1_3 * p3_2; const d1_3 = a1_0 * p3_0 + a1_1 * p3_1 + a1_2 * p3_2 + a1_3 * p3_3; const d2_0 = a2_0 * p0_0 + a2_1 * p1_0 + a2_2 * p2_0 + a2_3 * p3_0; const d2_1 = a2_0 * p1_0 + a2_1 * p1_1 + a2_2 * p2_1 + a2_3 * p3_1; const d2_2 = a2_0 * p2_0 + a2_1 * p2_1 + a2_2 * p2_2 + a2_3 * p3_2; const d2_3 = a2_0 * p3_0 + a2_1 * p3_1 + a2_2 * p3_2 + a2_3 * p3_3; const d3_0 = a3_0 * p0_0 + a3_1 * p1_0 + a3_2 * p2_0 + a3_3 * p3_0; const d3_1 = a3_0 * p1_0 + a3_1 * p1_1 + a3_2 * p2_1 + a3_3 * p3_1; const d3_2 = a3_0 * p2_0 + a3_1 * p2_1 + a3_2 * p2_2 + a3_3 * p3_2; const d3_3 = a3_0 * p3_0 + a3_1 * p3_1 + a3_2 * p3_2 + a3_3 * p3_3;
+p0_0 = q0_0 + d0_0 * a0_0 + d0_1 * a0_1 + d0_2 * a0_2 + d0_3 * a0_3; p1_0 = q1_0 + d1_0 * a0_0 + d1_1 * a0_1 + d1_2 * a0_2 + d1_3 * a0_3; p1_1 = q1_1 + d1_0 * a1_0 + d1_1 * a1_1 + d1_2 * a1_2 + d1_3 * a1_3; p2_0 = q2_0 + d2_0 * a0_0 + d2_1 * a0_1 + d2_2 * a0_2 + d2_3 * a0_3; p2_1 = q2_1 + d2_0 * a1_0 + d2_1 * a1_1 + d2_2 * a1_2 + d2_3 * a1_3; p2_2 = q2_2 + d2_0 * a2_0 + d2_1 * a2_1 + d2_2 * a2_2 + d2_3 * a2_3; p3_0 = q3_0 + d3_0 * a0_0 + d3_1 * a0_1 + d3_2 * a0_2 + d3_3 * a0_3; p3_1 = q3_1 + d3_0 * a1_0 + d3_1 * a1_1 + d3_2 * a1_2 + d3_3 * a1_3; p3_2 = q3_2 + d3_0 * a2_0 + d3_1 * a2_1 + d3_2 * a2_2 + d3_3 * a2_3; p3_3 = q3_3 + d3_0 * a3_0 + d3_1 * a3_1 + d3_2 * a3_2 + d3_3 * a3_3;
+}
+let nisHere = 0, taken = 0, at = (k - work.yStart) * m;
+for (let j = 0, c = 0; j < m; j++, c += 4) {
+const d = y[at++]!;
+if (d !== d) continue;
+const r = R[j]!;
+const c0 = C[c]!; const c1 = C[c + 1]!; const c2 = C[c + 2]!; const c3 = C[c + 3]!;
+const t0 = p0_0 * c0 + p1_0 * c1 + p2_0 * c2 + p3_0 * c3; const t1 = p1_0 * c0 + p1_1 * c1 + p2_1 * c2 + p3_1 * c3; const t2 = p2_0 * c0 + p2_1 * c1 + p2_2 * c2 + p3_2 * c3; const t3 = p3_0 * c0 + p3_1 * c1 + p3_2 * c2 + p3_3 * c3;
+const S = r + c0 * t0 + c1 * t1 + c2 * t2 + c3 * t3;
+const w = 1 / S, v = d - (c0 * x0 + c1 * x1 + c2 * x2 + c3 * x3);
+nisHere += v * v * w; product *= S; taken++;
+if (wantWhite) white[k * m + j] = v * Math.sqrt(w);
+const l0 = t0 * w; const l1 = t1 * w; const l2 = t2 * w; const l3 = t3 * w;
+x0 += l0 * v; x1 += l1 * v; x2 += l2 * v; x3 += l3 * v;
+const m0_0 = p0_0 - l0 * t0; const m0_1 = p1_0 - l0 * t1; const m0_2 = p2_0 - l0 * t2; const m0_3 = p3_0 - l0 * t3; const m1_0 = p1_0 - l1 * t0; const m1_1 = p1_1 - l1 * t1; const m1_2 = p2_1 - l1 * t2; const m1_3 = p3_1 - l1 * t3; const m2_0 = p2_0 - l2 * t0; const m2_1 = p2_1 - l2 * t1; const m2_2 = p2_2 - l2 * t2; const m2_3 = p3_2 - l2 * t3; const m3_0 = p3_0 - l3 * t0; const m3_1 = p3_1 - l3 * t1; const m3_2 = p3_2 - l3 * t2; const m3_3 = p3_3 - l3 * t3;
+const g0 = m0_0 * c0 + m0_1 * c1 + m0_2 * c2 + m0_3 * c3 - r * l0; const g1 = m1_0 * c0 + m1_1 * c1 + m1_2 * c2 + m1_3 * c3 - r * l1; const g2 = m2_0 * c0 + m2_1 * c1 + m2_2 * c2 + m2_3 * c3 - r * l2; const g3 = m3_0 * c0 + m3_1 * c1 + m3_2 * c2 + m3_3 * c3 - r * l3;
+p0_0 = m0_0 - g0 * l0; p1_0 = m1_0 - g1 * l0; p1_1 = m1_1 - g1 * l1; p2_0 = m2_0 - g2 * l0; p2_1 = m2_1 - g2 * l1; p2_2 = m2_2 - g2 * l2; p3_0 = m3_0 - g3 * l0; p3_1 = m3_1 - g3 * l1; p3_2 = m3_2 - g3 * l2; p3_3 = m3_3 - g3 * l3;
+}
+if (wantNis) nis[k] = taken > 0 ? nisHere : NaN;
+readings += taken; quad += nisHere;
+if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }
+let e = h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3;
+for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;
+z[k] = e;
+if (wantSd) {
+const e0 = p0_0 * h0 + p1_0 * h1 + p2_0 * h2 + p3_0 * h3; const e1 = p1_0 * h0 + p1_1 * h1 + p2_1 * h2 + p3_1 * h3; const e2 = p2_0 * h0 + p2_1 * h1 + p2_2 * h2 + p3_2 * h3; const e3 = p3_0 * h0 + p3_1 * h1 + p3_2 * h2 + p3_3 * h3;
+const variance = h0 * e0 + h1 * e1 + h2 * e2 + h3 * e3;
+sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3;
+P[0] = p0_0; P[4] = p1_0; P[1] = p1_0; P[5] = p1_1; P[8] = p2_0; P[2] = p2_0; P[9] = p2_1; P[6] = p2_1; P[10] = p2_2; P[12] = p3_0; P[3] = p3_0; P[13] = p3_1; P[7] = p3_1; P[14] = p3_2; P[11] = p3_2; P[15] = p3_3;
+sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;
+}
+
+/** Fixed-gain filter for 4 states and 1 reading; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady4x1(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m1_0 = M[4]!; const m1_1 = M[5]!; const m1_2 = M[6]!; const m1_3 = M[7]!; const m2_0 = M[8]!; const m2_1 = M[9]!; const m2_2 = M[10]!; const m2_3 = M[11]!; const m3_0 = M[12]!; const m3_1 = M[13]!; const m3_2 = M[14]!; const m3_3 = M[15]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!;
+const w0_0 = W[0]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
+const g0 = G[0]!, o0 = present[0]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!;
+if (y0 !== y0) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3);
+if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
+let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0);
+let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0);
+for (let j = 0, b = 0; j < p; j++, b += 4) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1; x2 = f2; x3 = f3;
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3;
+sums[2]! += quad;
+return k;
+}
+
+/** Fixed-gain filter for 4 states and 2 readings; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady4x2(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m1_0 = M[4]!; const m1_1 = M[5]!; const m1_2 = M[6]!; const m1_3 = M[7]!; const m2_0 = M[8]!; const m2_1 = M[9]!; const m2_2 = M[10]!; const m2_3 = M[11]!; const m3_0 = M[12]!; const m3_1 = M[13]!; const m3_2 = M[14]!; const m3_3 = M[15]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c1_0 = C[4]!; const c1_1 = C[5]!; const c1_2 = C[6]!; const c1_3 = C[7]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k1_0 = K[4]!; const k1_1 = K[5]!; const k1_2 = K[6]!; const k1_3 = K[7]!;
+const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
+const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!; const y1 = y[at + o1]!;
+if (y0 !== y0 || y1 !== y1) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3); const v1 = y1 - (c1_0 * x0 + c1_1 * x1 + c1_2 * x2 + c1_3 * x3);
+if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
+let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0 + g1 * v1);
+let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0 + k1_2 * y1); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0 + k1_3 * y1);
+for (let j = 0, b = 0; j < p; j++, b += 4) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1; x2 = f2; x3 = f3;
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3;
+sums[2]! += quad;
+return k;
+}
+
+/** Fixed-gain filter for 4 states and 3 readings; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady4x3(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m1_0 = M[4]!; const m1_1 = M[5]!; const m1_2 = M[6]!; const m1_3 = M[7]!; const m2_0 = M[8]!; const m2_1 = M[9]!; const m2_2 = M[10]!; const m2_3 = M[11]!; const m3_0 = M[12]!; const m3_1 = M[13]!; const m3_2 = M[14]!; const m3_3 = M[15]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c1_0 = C[4]!; const c1_1 = C[5]!; const c1_2 = C[6]!; const c1_3 = C[7]!; const c2_0 = C[8]!; const c2_1 = C[9]!; const c2_2 = C[10]!; const c2_3 = C[11]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k1_0 = K[4]!; const k1_1 = K[5]!; const k1_2 = K[6]!; const k1_3 = K[7]!; const k2_0 = K[8]!; const k2_1 = K[9]!; const k2_2 = K[10]!; const k2_3 = K[11]!;
+const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!; const w3_0 = W[3]!; const w4_0 = W[4]!; const w5_0 = W[5]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
+const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!; const g2 = G[2]!, o2 = present[2]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!; const y1 = y[at + o1]!; const y2 = y[at + o2]!;
+if (y0 !== y0 || y1 !== y1 || y2 !== y2) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3); const v1 = y1 - (c1_0 * x0 + c1_1 * x1 + c1_2 * x2 + c1_3 * x3); const v2 = y2 - (c2_0 * x0 + c2_1 * x1 + c2_2 * x2 + c2_3 * x3);
+if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 = w3_0 * v0 + w4_0 * v1 + w5_0 * v2; const q = s0 * s0 + s1 * s1 + s2 * s2; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; white[k * stride + o2] = s2; } }
+let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0 + g1 * v1 + g2 * v2);
+let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0 + k1_3 * y1 + k2_3 * y2);
+for (let j = 0, b = 0; j < p; j++, b += 4) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1; x2 = f2; x3 = f3;
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3;
+sums[2]! += quad;
+return k;
+}

@@ -1,0 +1,147 @@
+// Written by generate.ts from kernel-source.ts; change those, not this.
+import type { FilterWork, SteadyWork } from '../work.ts';
+
+/** Time-varying Kalman filter for 6 states; see FilterKernel in work.ts. */
+// prettier-ignore
+export function filter6(work: FilterWork, from: number, to: number, predicted: boolean): void {
+const { A, B, C, Q, R, H, F, x, P, u, y, z, sd, nis, white, m, p, sums } = work;
+const a0_0 = A[0]!; const a0_1 = A[1]!; const a0_2 = A[2]!; const a0_3 = A[3]!; const a0_4 = A[4]!; const a0_5 = A[5]!; const a1_0 = A[6]!; const a1_1 = A[7]!; const a1_2 = A[8]!; const a1_3 = A[9]!; const a1_4 = A[10]!; const a1_5 = A[11]!; const a2_0 = A[12]!; const a2_1 = A[13]!; const a2_2 = A[14]!; const a2_3 = A[15]!; const a2_4 = A[16]!; const a2_5 = A[17]!; const a3_0 = A[18]!; const a3_1 = A[19]!; const a3_2 = A[20]!; const a3_3 = A[21]!; const a3_4 = A[22]!; const a3_5 = A[23]!; const a4_0 = A[24]!; const a4_1 = A[25]!; const a4_2 = A[26]!; const a4_3 = A[27]!; const a4_4 = A[28]!; const a4_5 = A[29]!; const a5_0 = A[30]!; const a5_1 = A[31]!; const a5_2 = A[32]!; const a5_3 = A[33]!; const a5_4 = A[34]!; const a5_5 = A[35]!;
+const q0_0 = Q[0]!; const q1_0 = Q[6]!; const q1_1 = Q[7]!; const q2_0 = Q[12]!; const q2_1 = Q[13]!; const q2_2 = Q[14]!; const q3_0 = Q[18]!; const q3_1 = Q[19]!; const q3_2 = Q[20]!; const q3_3 = Q[21]!; const q4_0 = Q[24]!; const q4_1 = Q[25]!; const q4_2 = Q[26]!; const q4_3 = Q[27]!; const q4_4 = Q[28]!; const q5_0 = Q[30]!; const q5_1 = Q[31]!; const q5_2 = Q[32]!; const q5_3 = Q[33]!; const q5_4 = Q[34]!; const q5_5 = Q[35]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
+let p0_0 = P[0]!; let p1_0 = P[6]!; let p1_1 = P[7]!; let p2_0 = P[12]!; let p2_1 = P[13]!; let p2_2 = P[14]!; let p3_0 = P[18]!; let p3_1 = P[19]!; let p3_2 = P[20]!; let p3_3 = P[21]!; let p4_0 = P[24]!; let p4_1 = P[25]!; let p4_2 = P[26]!; let p4_3 = P[27]!; let p4_4 = P[28]!; let p5_0 = P[30]!; let p5_1 = P[31]!; let p5_2 = P[32]!; let p5_3 = P[33]!; let p5_4 = P[34]!; let p5_5 = P[35]!;
+const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;
+let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;
+for (let k = from; k < to; k++) {
+if (skip) { skip = false; } else {
+let f0 = a0_0 * x0 + a0_1 * x1 + a0_2 * x2 + a0_3 * x3 + a0_4 * x4 + a0_5 * x5; let f1 = a1_0 * x0 + a1_1 * x1 + a1_2 * x2 + a1_3 * x3 + a1_4 * x4 + a1_5 * x5; let f2 = a2_0 * x0 + a2_1 * x1 + a2_2 * x2 + a2_3 * x3 + a2_4 * x4 + a2_5 * x5; let f3 = a3_0 * x0 + a3_1 * x1 + a3_2 * x2 + a3_3 * x3 + a3_4 * x4 + a3_5 * x5; let f4 = a4_0 * x0 + a4_1 * x1 + a4_2 * x2 + a4_3 * x3 + a4_4 * x4 + a4_5 * x5; let f5 = a5_0 * x0 + a5_1 * x1 + a5_2 * x2 + a5_3 * x3 + a5_4 * x4 + a5_5 * x5;
+for (let j = 0, b = 0, i = (k - 1) * p; j < p; j++, b += 6) { const w = u[i++]!; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
+x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
+const d0_0 = a0_0 * p0_0 + a0_1 * p1_0 + a0_2 * p2_0 + a0_3 * p3_0 + a0_4 * p4_0 + a0_5 * p5_0; const d0_1 = a0_0 * p1_0 + a0_1 * p1_1 + a0_2 * p2_1 + a0_3 * p3_1 + a0_4 * p4_1 + a0_5 * p5_1; const d0_2 = a0_0 * p2_0 + a0_1 * p2_1 + a0_2 * p2_2 + a0_3 * p3_2 + a0_4 * p4_2 + a0_5 * p5_2; const d0_3 = a0_0 * p3_0 + a0_1 * p3_1 + a0_2 * p3_2 + a0_3 * p3_3 + a0_4 * p4_3 + a0_5 * p5_3; const d0_4 = a0_0 * p4_0 + a0_1 * p4_1 + a0_2 * p4_2 + a0_3 * p4_3 + a0_4 * p4_4 + a0_5 * p5_4; const d0_5 = a0_0 * p5_0 + a0_1 * p5_1 + a0_2 * p5_2 + a0_3 * p5_3 + a0_4 * p5_4 + a0_5 * p5_5; const d1_0 = a1_0 * p0_0 + a1_1 * p1_0 + a1_2 * p2_0 + a1_3 * p3_0 + a1_4 * p4_0 + a1_5 * p5_0; const d1_1 = a1_0 * p1_0 + a1_1 * p1_1 + a1_2 * p2_1 + a1_3 * p3_1 + a1_4 * p4_1 + a1_5 * p5_1; const d1_2 = a1_0 * p2_0 + a1_1 * p2_1 + a1_2 * p2_2 + a1_3 * p3_2 + a1_4 * p4_2 + a1_5 * p5_2; const d1_3 = a1_0 * p3_0 + a1_1 * p3_1 + a1_2 * p3_2 + a1_3 * p3_3 + a1_4 * p4_3 + a1_5 * p5_3; const d1_4 = a1_0 * p4_0 + a1_1 * p4_1 + a1_2 * p4_2 + a1_3 * p4_3 + a1_4 * p4_4 + a1_5 * p5_4; const d1_5 = a1_0 * p5_0 + a1_1 * p5_1 + a1_2 * p5_2 + a1_3 * p5_3 + a1_4 * p5_4 + a1_5 * p5_5; const d2_0 = a2_0 * p0_0 + a2_1 * p1_0 + a2_2 * p2_0 + a2_3 * p3_0 + a2_4 * p4_0 + a2_5 * p5_0; const d2_1 = a2_0 * p1_0 + a2_1 * p1_1 + a2_2 * p2_1 + a2_3 * p3_1 + a2_4 * p4_1 + a2_5 * p5_1; const d2_2 = a2_0 * p2_0 + a2_1 * p2_1 + a2_2 * p2_2 + a2_3 * p3_2 + a2_4 * p4_2 + a2_5 * p5_2; const d2_3 = a2_0 * p3_0 + a2_1 * p3_1 + a2_2 * p3_2 + a2_3 * p3_3 + a2_4 * p4_3 + a2_5 * p5_3; const d2_4 = a2_0 * p4_0 + a2_1 * p4_1 + a2_2 * p4_2 + a2_3 * p4_3 + a2_4 * p4_4 + a2_5 * p5_4; const d2_5 = a2_0 * p5_0 + a2_1 * p5_1 + a2_2 * p5_2 + a2_3 * p5_3 + a2_4 * p5_4 + a2_5 * p5_5; const d3_0 = a3_0 * p0_0 + a3_1 * p1_0 + a3_2 * p2_0 + a3_3 * p3_0 + a3_4 * p4_0 + a3_5 * p5_0; const d3_1 = a3_0 * p1_0 + a3_1 * p1_1 + a3_2 * p2_1 + a3_3 * p3_1 + a3_4 * p4_1 + a3_5 * p5_1; const d3_2 = a3_0 * p2_0 + a3_1 * p2_1 + a3_2 * p2_2 + a3_3 * p3_2 + a3_4 * p4_2 + a3_5 * p5_2; const d3_3 = a3_0 * p3_0 + a3_1 * p3_1 + a3_2 * p3_2 + a3_3 * p3_3 + a3_4 * p4_3 + a3_5 * p5_3; const d3_4 = a3_0 * p4_0 + a3_1 * p4_1 + a3_2 * p4_2 + a3_3 * p4_3 + a3_4 * p4_4 + a3_5 * p5_4; const d3_5 = a3_0 * p5_0 + a3_1 * p5_1 + a3_2 * p5_2 + a3_3 * p5_3 + a3_4 * p5_4 + a3_5 * p5_5; const d4_0 = a4_0 * p0_0 + a4_1 * p1_0 + a4_2 * p2_0 + a4_3 * p3_0 + a4_4 * p4_0 + a4_5 * p5_0; const d4_1 = a4_0 * p1_0 + a4_1 * p1_1 + a4_2 * p2_1 + a4_3 * p3_1 + a4_4 * p4_1 + a4_5 * p5_1; const d4_2 = a4_0 * p2_0 + a4_1 * p2_1 + a4_2 * p2_2 + a4_3 * p3_2 + a4_4 * p4_2 + a4_5 * p5_2; const d4_3 = a4_0 * p3_0 + a4_1 * p3_1 + a4_2 * p3_2 + a4_3 * p3_3 + a4_4 * p4_3 + a4_5 * p5_3; const d4_4 = a4_0 * p4_0 + a4_1 * p4_1 + a4_2 * p4_2 + a4_3 * p4_3 + a4_4 * p4_4 + a4_5 * p5_4; const d4_5 = a4_0 * p5_0 + a4_1 * p5_1 + a4_2 * p5_2 + a4_3 * p5_3 + a4_4 * p5_4 + a4_5 * p5_5; const d5_0 = a5_0 * p0_0 + a5_1 * p1_0 + a5_2 * p2_0 + a5_3 * p3_0 + a5_4 * p4_0 + a5_5 * p5_0; const d5_1 = a5_0 * p1_0 + a5_1 * p1_1 + a5_2 * p2_1 + a5_3 * p3_1 + a5_4 * p4_1 + a5_5 * p5_1; const d5_2 = a5_0 * p2_0 + a5_1 * p2_1 + a5_2 * p2_2 + a5_3 * p3_2 + a5_4 * p4_2 + a5_5 * p5_2; const d5_3 = a5_0 * p3_0 + a5_1 * p3_1 + a5_2 * p3_2 + a5_3 * p3_3 + a5_4 * p4_3 + a5_5 * p5_3; const d5_4 = a5_0 * p4_0 + a5_1 * p4_1 + a5_2 * p4_2 + a5_3 * p4_3 + a5_4 * p4_4 + a5_5 * p5_4; const d5_5 = a5_0 * p5_0 + a5_1 * p5_1 + a5_2 * p5_2 + a5_3 * p5_3 + a5_4 * p5_4 + a5_5 * p5_5;
+p0_0 = q0_0 + d0_0 * a0_0 + d0_1 * a0_1 + d0_2 * a0_2 + d0_3 * a0_3 + d0_4 * a0_4 + d0_5 * a0_5; p1_0 = q1_0 + d1_0 * a0_0 + d1_1 * a0_1 + d1_2 * a0_2 + d1_3 * a0_3 + d1_4 * a0_4 + d1_5 * a0_5; p1_1 = q1_1 + d1_0 * a1_0 + d1_1 * a1_1 + d1_2 * a1_2 + d1_3 * a1_3 + d1_4 * a1_4 + d1_5 * a1_5; p2_0 = q2_0 + d2_0 * a0_0 + d2_1 * a0_1 + d2_2 * a0_2 + d2_3 * a0_3 + d2_4 * a0_4 + d2_5 * a0_5; p2_1 = q2_1 + d2_0 * a1_0 + d2_1 * a1_1 + d2_2 * a1_2 + d2_3 * a1_3 + d2_4 * a1_4 + d2_5 * a1_5; p2_2 = q2_2 + d2_0 * a2_0 + d2_1 * a2_1 + d2_2 * a2_2 + d2_3 * a2_3 + d2_4 * a2_4 + d2_5 * a2_5; p3_0 = q3_0 + d3_0 * a0_0 + d3_1 * a0_1 + d3_2 * a0_2 + d3_3 * a0_3 + d3_4 * a0_4 + d3_5 * a0_5; p3_1 = q3_1 + d3_0 * a1_0 + d3_1 * a1_1 + d3_2 * a1_2 + d3_3 * a1_3 + d3_4 * a1_4 + d3_5 * a1_5; p3_2 = q3_2 + d3_0 * a2_0 + d3_1 * a2_1 + d3_2 * a2_2 + d3_3 * a2_3 + d3_4 * a2_4 + d3_5 * a2_5; p3_3 = q3_3 + d3_0 * a3_0 + d3_1 * a3_1 + d3_2 * a3_2 + d3_3 * a3_3 + d3_4 * a3_4 + d3_5 * a3_5; p4_0 = q4_0 + d4_0 * a0_0 + d4_1 * a0_1 + d4_2 * a0_2 + d4_3 * a0_3 + d4_4 * a0_4 + d4_5 * a0_5; p4_1 = q4_1 + d4_0 * a1_0 + d4_1 * a1_1 + d4_2 * a1_2 + d4_3 * a1_3 + d4_4 * a1_4 + d4_5 * a1_5; p4_2 = q4_2 + d4_0 * a2_0 + d4_1 * a2_1 + d4_2 * a2_2 + d4_3 * a2_3 + d4_4 * a2_4 + d4_5 * a2_5; p4_3 = q4_3 + d4_0 * a3_0 + d4_1 * a3_1 + d4_2 * a3_2 + d4_3 * a3_3 + d4_4 * a3_4 + d4_5 * a3_5; p4_4 = q4_4 + d4_0 * a4_0 + d4_1 * a4_1 + d4_2 * a4_2 + d4_3 * a4_3 + d4_4 * a4_4 + d4_5 * a4_5; p5_0 = q5_0 + d5_0 * a0_0 + d5_1 * a0_1 + d5_2 * a0_2 + d5_3 * a0_3 + d5_4 * a0_4 + d5_5 * a0_5; p5_1 = q5_1 + d5_0 * a1_0 + d5_1 * a1_1 + d5_2 * a1_2 + d5_3 * a1_3 + d5_4 * a1_4 + d5_5 * a1_5; p5_2 = q5_2 + d5_0 * a2_0 + d5_1 * a2_1 + d5_2 * a2_2 + d5_3 * a2_3 + d5_4 * a2_4 + d5_5 * a2_5; p5_3 = q5_3 + d5_0 * a3_0 + d5_1 * a3_1 + d5_2 * a3_2 + d5_3 * a3_3 + d5_4 * a3_4 + d5_5 * a3_5; p5_4 = q5_4 + d5_0 * a4_0 + d5_1 * a4_1 + d5_2 * a4_2 + d5_3 * a4_3 + d5_4 * a4_4 + d5_5 * a4_5; p5_5 = q5_5 + d5_0 * a5_0 + d5_1 * a5_1 + d5_2 * a5_2 + d5_3 * a5_3 + d5_4 * a5_4 + d5_5 * a5_5;
+}
+let nisHere = 0, taken = 0, at = (k - work.yStart) * m;
+for (let j = 0, c = 0; j < m; j++, c += 6) {
+const d = y[at++]!;
+if (d !== d) continue;
+const r = R[j]!;
+const c0 = C[c]!; const c1 = C[c + 1]!; const c2 = C[c + 2]!; const c3 = C[c + 3]!; const c4 = C[c + 4]!; const c5 = C[c + 5]!;
+const t0 = p0_0 * c0 + p1_0 * c1 + p2_0 * c2 + p3_0 * c3 + p4_0 * c4 + p5_0 * c5; const t1 = p1_0 * c0 + p1_1 * c1 + p2_1 * c2 + p3_1 * c3 + p4_1 * c4 + p5_1 * c5; const t2 = p2_0 * c0 + p2_1 * c1 + p2_2 * c2 + p3_2 * c3 + p4_2 * c4 + p5_2 * c5; const t3 = p3_0 * c0 + p3_1 * c1 + p3_2 * c2 + p3_3 * c3 + p4_3 * c4 + p5_3 * c5; const t4 = p4_0 * c0 + p4_1 * c1 + p4_2 * c2 + p4_3 * c3 + p4_4 * c4 + p5_4 * c5; const t5 = p5_0 * c0 + p5_1 * c1 + p5_2 * c2 + p5_3 * c3 + p5_4 * c4 + p5_5 * c5;
+const S = r + c0 * t0 + c1 * t1 + c2 * t2 + c3 * t3 + c4 * t4 + c5 * t5;
+const w = 1 / S, v = d - (c0 * x0 + c1 * x1 + c2 * x2 + c3 * x3 + c4 * x4 + c5 * x5);
+nisHere += v * v * w; product *= S; taken++;
+if (wantWhite) white[k * m + j] = v * Math.sqrt(w);
+const l0 = t0 * w; const l1 = t1 * w; const l2 = t2 * w; const l3 = t3 * w; const l4 = t4 * w; const l5 = t5 * w;
+x0 += l0 * v; x1 += l1 * v; x2 += l2 * v; x3 += l3 * v; x4 += l4 * v; x5 += l5 * v;
+const m0_0 = p0_0 - l0 * t0; const m0_1 = p1_0 - l0 * t1; const m0_2 = p2_0 - l0 * t2; const m0_3 = p3_0 - l0 * t3; const m0_4 = p4_0 - l0 * t4; const m0_5 = p5_0 - l0 * t5; const m1_0 = p1_0 - l1 * t0; const m1_1 = p1_1 - l1 * t1; const m1_2 = p2_1 - l1 * t2; const m1_3 = p3_1 - l1 * t3; const m1_4 = p4_1 - l1 * t4; const m1_5 = p5_1 - l1 * t5; const m2_0 = p2_0 - l2 * t0; const m2_1 = p2_1 - l2 * t1; const m2_2 = p2_2 - l2 * t2; const m2_3 = p3_2 - l2 * t3; const m2_4 = p4_2 - l2 * t4; const m2_5 = p5_2 - l2 * t5; const m3_0 = p3_0 - l3 * t0; const m3_1 = p3_1 - l3 * t1; const m3_2 = p3_2 - l3 * t2; const m3_3 = p3_3 - l3 * t3; const m3_4 = p4_3 - l3 * t4; const m3_5 = p5_3 - l3 * t5; const m4_0 = p4_0 - l4 * t0; const m4_1 = p4_1 - l4 * t1; const m4_2 = p4_2 - l4 * t2; const m4_3 = p4_3 - l4 * t3; const m4_4 = p4_4 - l4 * t4; const m4_5 = p5_4 - l4 * t5; const m5_0 = p5_0 - l5 * t0; const m5_1 = p5_1 - l5 * t1; const m5_2 = p5_2 - l5 * t2; const m5_3 = p5_3 - l5 * t3; const m5_4 = p5_4 - l5 * t4; const m5_5 = p5_5 - l5 * t5;
+const g0 = m0_0 * c0 + m0_1 * c1 + m0_2 * c2 + m0_3 * c3 + m0_4 * c4 + m0_5 * c5 - r * l0; const g1 = m1_0 * c0 + m1_1 * c1 + m1_2 * c2 + m1_3 * c3 + m1_4 * c4 + m1_5 * c5 - r * l1; const g2 = m2_0 * c0 + m2_1 * c1 + m2_2 * c2 + m2_3 * c3 + m2_4 * c4 + m2_5 * c5 - r * l2; const g3 = m3_0 * c0 + m3_1 * c1 + m3_2 * c2 + m3_3 * c3 + m3_4 * c4 + m3_5 * c5 - r * l3; const g4 = m4_0 * c0 + m4_1 * c1 + m4_2 * c2 + m4_3 * c3 + m4_4 * c4 + m4_5 * c5 - r * l4; const g5 = m5_0 * c0 + m5_1 * c1 + m5_2 * c2 + m5_3 * c3 + m5_4 * c4 + m5_5 * c5 - r * l5;
+p0_0 = m0_0 - g0 * l0; p1_0 = m1_0 - g1 * l0; p1_1 = m1_1 - g1 * l1; p2_0 = m2_0 - g2 * l0; p2_1 = m2_1 - g2 * l1; p2_2 = m2_2 - g2 * l2; p3_0 = m3_0 - g3 * l0; p3_1 = m3_1 - g3 * l1; p3_2 = m3_2 - g3 * l2; p3_3 = m3_3 - g3 * l3; p4_0 = m4_0 - g4 * l0; p4_1 = m4_1 - g4 * l1; p4_2 = m4_2 - g4 * l2; p4_3 = m4_3 - g4 * l3; p4_4 = m4_4 - g4 * l4; p5_0 = m5_0 - g5 * l0; p5_1 = m5_1 - g5 * l1; p5_2 = m5_2 - g5 * l2; p5_3 = m5_3 - g5 * l3; p5_4 = m5_4 - g5 * l4; p5_5 = m5_5 - g5 * l5;
+}
+if (wantNis) nis[k] = taken > 0 ? nisHere : NaN;
+readings += taken; quad += nisHere;
+if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }
+let e = h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5;
+for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;
+z[k] = e;
+if (wantSd) {
+const e0 = p0_0 * h0 + p1_0 * h1 + p2_0 * h2 + p3_0 * h3 + p4_0 * h4 + p5_0 * h5; const e1 = p1_0 * h0 + p1_1 * h1 + p2_1 * h2 + p3_1 * h3 + p4_1 * h4 + p5_1 * h5; const e2 = p2_0 * h0 + p2_1 * h1 + p2_2 * h2 + p3_2 * h3 + p4_2 * h4 + p5_2 * h5; const e3 = p3_0 * h0 + p3_1 * h1 + p3_2 * h2 + p3_3 * h3 + p4_3 * h4 + p5_3 * h5; const e4 = p4_0 * h0 + p4_1 * h1 + p4_2 * h2 + p4_3 * h3 + p4_4 * h4 + p5_4 * h5; const e5 = p5_0 * h0 + p5_1 * h1 + p5_2 * h2 + p5_3 * h3 + p5_4 * h4 + p5_5 * h5;
+const variance = h0 * e0 + h1 * e1 + h2 * e2 + h3 * e3 + h4 * e4 + h5 * e5;
+sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
+P[0] = p0_0; P[6] = p1_0; P[1] = p1_0; P[7] = p1_1; P[12] = p2_0; P[2] = p2_0; P[13] = p2_1; P[8] = p2_1; P[14] = p2_2; P[18] = p3_0; P[3] = p3_0; P[19] = p3_1; P[9] = p3_1; P[20] = p3_2; P[15] = p3_2; P[21] = p3_3; P[24] = p4_0; P[4] = p4_0; P[25] = p4_1; P[10] = p4_1; P[26] = p4_2; P[16] = p4_2; P[27] = p4_3; P[22] = p4_3; P[28] = p4_4; P[30] = p5_0; P[5] = p5_0; P[31] = p5_1; P[11] = p5_1; P[32] = p5_2; P[17] = p5_2; P[33] = p5_3; P[23] = p5_3; P[34] = p5_4; P[29] = p5_4; P[35] = p5_5;
+sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;
+}
+
+/** Fixed-gain filter for 6 states and 1 reading; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady6x1(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m0_4 = M[4]!; const m0_5 = M[5]!; const m1_0 = M[6]!; const m1_1 = M[7]!; const m1_2 = M[8]!; const m1_3 = M[9]!; const m1_4 = M[10]!; const m1_5 = M[11]!; const m2_0 = M[12]!; const m2_1 = M[13]!; const m2_2 = M[14]!; const m2_3 = M[15]!; const m2_4 = M[16]!; const m2_5 = M[17]!; const m3_0 = M[18]!; const m3_1 = M[19]!; const m3_2 = M[20]!; const m3_3 = M[21]!; const m3_4 = M[22]!; const m3_5 = M[23]!; const m4_0 = M[24]!; const m4_1 = M[25]!; const m4_2 = M[26]!; const m4_3 = M[27]!; const m4_4 = M[28]!; const m4_5 = M[29]!; const m5_0 = M[30]!; const m5_1 = M[31]!; const m5_2 = M[32]!; const m5_3 = M[33]!; const m5_4 = M[34]!; const m5_5 = M[35]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c0_4 = C[4]!; const c0_5 = C[5]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k0_4 = K[4]!; const k0_5 = K[5]!;
+const w0_0 = W[0]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!;
+const g0 = G[0]!, o0 = present[0]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!;
+if (y0 !== y0) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3 + c0_4 * x4 + c0_5 * x5);
+if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
+let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5) + (g0 * v0);
+let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5) + (k0_2 * y0); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5) + (k0_3 * y0); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5) + (k0_4 * y0); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5) + (k0_5 * y0);
+for (let j = 0, b = 0; j < p; j++, b += 6) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
+sums[2]! += quad;
+return k;
+}
+
+/** Fixed-gain filter for 6 states and 2 readings; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady6x2(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m0_4 = M[4]!; const m0_5 = M[5]!; const m1_0 = M[6]!; const m1_1 = M[7]!; const m1_2 = M[8]!; const m1_3 = M[9]!; const m1_4 = M[10]!; const m1_5 = M[11]!; const m2_0 = M[12]!; const m2_1 = M[13]!; const m2_2 = M[14]!; const m2_3 = M[15]!; const m2_4 = M[16]!; const m2_5 = M[17]!; const m3_0 = M[18]!; const m3_1 = M[19]!; const m3_2 = M[20]!; const m3_3 = M[21]!; const m3_4 = M[22]!; const m3_5 = M[23]!; const m4_0 = M[24]!; const m4_1 = M[25]!; const m4_2 = M[26]!; const m4_3 = M[27]!; const m4_4 = M[28]!; const m4_5 = M[29]!; const m5_0 = M[30]!; const m5_1 = M[31]!; const m5_2 = M[32]!; const m5_3 = M[33]!; const m5_4 = M[34]!; const m5_5 = M[35]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c0_4 = C[4]!; const c0_5 = C[5]!; const c1_0 = C[6]!; const c1_1 = C[7]!; const c1_2 = C[8]!; const c1_3 = C[9]!; const c1_4 = C[10]!; const c1_5 = C[11]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k0_4 = K[4]!; const k0_5 = K[5]!; const k1_0 = K[6]!; const k1_1 = K[7]!; const k1_2 = K[8]!; const k1_3 = K[9]!; const k1_4 = K[10]!; const k1_5 = K[11]!;
+const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!;
+const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!; const y1 = y[at + o1]!;
+if (y0 !== y0 || y1 !== y1) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3 + c0_4 * x4 + c0_5 * x5); const v1 = y1 - (c1_0 * x0 + c1_1 * x1 + c1_2 * x2 + c1_3 * x3 + c1_4 * x4 + c1_5 * x5);
+if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
+let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5) + (g0 * v0 + g1 * v1);
+let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5) + (k0_2 * y0 + k1_2 * y1); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5) + (k0_3 * y0 + k1_3 * y1); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5) + (k0_4 * y0 + k1_4 * y1); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5) + (k0_5 * y0 + k1_5 * y1);
+for (let j = 0, b = 0; j < p; j++, b += 6) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
+sums[2]! += quad;
+return k;
+}
+
+/** Fixed-gain filter for 6 states and 3 readings; see SteadyKernel in work.ts. */
+// prettier-ignore
+export function steady6x3(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
+const { x, u, y, z, nis, white, p, sums } = work;
+const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m0_4 = M[4]!; const m0_5 = M[5]!; const m1_0 = M[6]!; const m1_1 = M[7]!; const m1_2 = M[8]!; const m1_3 = M[9]!; const m1_4 = M[10]!; const m1_5 = M[11]!; const m2_0 = M[12]!; const m2_1 = M[13]!; const m2_2 = M[14]!; const m2_3 = M[15]!; const m2_4 = M[16]!; const m2_5 = M[17]!; const m3_0 = M[18]!; const m3_1 = M[19]!; const m3_2 = M[20]!; const m3_3 = M[21]!; const m3_4 = M[22]!; const m3_5 = M[23]!; const m4_0 = M[24]!; const m4_1 = M[25]!; const m4_2 = M[26]!; const m4_3 = M[27]!; const m4_4 = M[28]!; const m4_5 = M[29]!; const m5_0 = M[30]!; const m5_1 = M[31]!; const m5_2 = M[32]!; const m5_3 = M[33]!; const m5_4 = M[34]!; const m5_5 = M[35]!;
+const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c0_4 = C[4]!; const c0_5 = C[5]!; const c1_0 = C[6]!; const c1_1 = C[7]!; const c1_2 = C[8]!; const c1_3 = C[9]!; const c1_4 = C[10]!; const c1_5 = C[11]!; const c2_0 = C[12]!; const c2_1 = C[13]!; const c2_2 = C[14]!; const c2_3 = C[15]!; const c2_4 = C[16]!; const c2_5 = C[17]!;
+const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k0_4 = K[4]!; const k0_5 = K[5]!; const k1_0 = K[6]!; const k1_1 = K[7]!; const k1_2 = K[8]!; const k1_3 = K[9]!; const k1_4 = K[10]!; const k1_5 = K[11]!; const k2_0 = K[12]!; const k2_1 = K[13]!; const k2_2 = K[14]!; const k2_3 = K[15]!; const k2_4 = K[16]!; const k2_5 = K[17]!;
+const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!; const w3_0 = W[3]!; const w4_0 = W[4]!; const w5_0 = W[5]!;
+const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!;
+const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!; const g2 = G[2]!, o2 = present[2]!;
+let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
+const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
+let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+for (; k < to; k++, at += stride) {
+const y0 = y[at + o0]!; const y1 = y[at + o1]!; const y2 = y[at + o2]!;
+if (y0 !== y0 || y1 !== y1 || y2 !== y2) break;
+if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
+const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3 + c0_4 * x4 + c0_5 * x5); const v1 = y1 - (c1_0 * x0 + c1_1 * x1 + c1_2 * x2 + c1_3 * x3 + c1_4 * x4 + c1_5 * x5); const v2 = y2 - (c2_0 * x0 + c2_1 * x1 + c2_2 * x2 + c2_3 * x3 + c2_4 * x4 + c2_5 * x5);
+if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 = w3_0 * v0 + w4_0 * v1 + w5_0 * v2; const q = s0 * s0 + s1 * s1 + s2 * s2; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; white[k * stride + o2] = s2; } }
+let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5) + (g0 * v0 + g1 * v1 + g2 * v2);
+let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5) + (k0_3 * y0 + k1_3 * y1 + k2_3 * y2); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5) + (k0_4 * y0 + k1_4 * y1 + k2_4 * y2); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5) + (k0_5 * y0 + k1_5 * y1 + k2_5 * y2);
+for (let j = 0, b = 0; j < p; j++, b += 6) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
+z[k] = e;
+x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
+}
+x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
+sums[2]! += quad;
+return k;
+}
