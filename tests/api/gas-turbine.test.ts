@@ -67,6 +67,7 @@ describe.skipIf(withoutData('gas_turbine_nox'))(
       expect(dryRun.body.import.counts).toMatchObject({ rows: 1531, added: 1531, refused: 0 });
       await post(technician, `/sample-imports/${uploaded.body.import.id}/commit`, {
         version: dryRun.body.import.version,
+        outcome: dryRun.body.outcome,
       });
 
       const fields = sheetFields({

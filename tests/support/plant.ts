@@ -39,14 +39,14 @@ export type Plant = Awaited<ReturnType<typeof makePlant>>;
 export async function post(agent: Agent, path: string, body: object) {
   const answer = await agent.post(`/api/v1${path}`).send(body);
   if (answer.status !== 200)
-    throw new Error(`${path} answered ${answer.status}: ${JSON.stringify(answer.body)}`);
+    throw new Error(`${path} answered ${answer.status}: ${JSON.stringify(answer.body).slice(0, 400)}`);
   return answer.body;
 }
 
 export async function get(agent: Agent, path: string, query: object = {}) {
   const answer = await agent.get(`/api/v1${path}`).query(query);
   if (answer.status !== 200)
-    throw new Error(`${path} answered ${answer.status}: ${JSON.stringify(answer.body)}`);
+    throw new Error(`${path} answered ${answer.status}: ${JSON.stringify(answer.body).slice(0, 400)}`);
   return answer.body;
 }
 

@@ -1,0 +1,95 @@
+import type { AuditEntry } from '../../../shared/contracts/audit.ts';
+
+const verbs: Record<string, string> = {
+  add: 'added',
+  change: 'changed',
+  archive: 'archived',
+  'take-back': 'took back',
+  remove: 'removed',
+  commit: 'committed',
+  undo: 'undid',
+  propose: 'proposed',
+  decide: 'decided on',
+  start: 'started',
+  cancel: 'stopped',
+};
+
+const things: Record<string, string> = {
+  softSensor: 'soft sensor',
+  'sample-point': 'sample point',
+  'sample-import': 'sample file',
+  'history-import': 'history file',
+};
+const thingWord = (entity: string): string => things[entity] ?? entity.replaceAll('-', ' ');
+
+/** What was done, without who: "archived the area Hot end", "mailed a password link to Tove Halbrook". */
+export function deedWords(entry: AuditEntry): string {
+  const { action, entity, entityName, before, after } = entry;
+  switch (action) {
+    case 'sign-in':
+      return 'signed in';
+    case 'sign-out':
+      return 'signed out';
+    case 'set-password':
+      return 'set a password';
+    case 'ask-for-link':
+      return `asked for a password link for ${entityName}`;
+  }
+  if (entity === 'password link') return `mailed a password link to ${entityName}`;
+  if (entity === 'readings') return `removed readings of ${entityName}`;
+  return `${archiveVerb(before, after) ?? verbs[action] ?? action} the ${thingWord(entity)} ${entityName}`;
+}
+
+/** A change that only set or cleared the moment of archiving has a word of its own. */
+function archiveVerb(before: AuditEntry['before'], after: AuditEntry['after']): string | null {
+  if (!before || !after) return null;
+  for (const [field, gone, back] of [
+    ['archivedAt', 'archived', 'took back'],
+    ['deactivatedAt', 'deactivated', 'took back'],
+  ] as const) {
+    if (!(field in before) || (before[field] === null) === (after[field] === null)) continue;
+    return after[field] === null ? back : gone;
+  }
+  return null;
+}
+
+export interface FieldChange {
+  field: string;
+  label: string;
+  before: unknown;
+  after: unknown;
+  changed: boolean;
+}
+
+const labels: Record<string, string> = {
+  email: 'E-mail address',
+  areaId: 'Area number',
+  unitId: 'Unit number',
+  tagName: 'Tag',
+  archivedAt: 'Archived',
+  deactivatedAt: 'Deactivated',
+  hasPassword: 'Password set',
+  importanceClass: 'Class',
+};
+const hidden = new Set(['id', 'siteId', 'version']);
+
+/** Field by field, what differs first; fields that only number the row itself are left out. */
+export function fieldChanges({ before, after }: Pick<AuditEntry, 'before' | 'after'>): FieldChange[] {
+  const names = [...new Set([...Object.keys(before ?? {}), ...Object.keys(after ?? {})])];
+  const rows = names
+    .filter((field) => !hidden.has(field))
+    .map((field) => ({
+      field,
+      label: labels[field] ?? labelOf(field),
+      before: before?.[field],
+      after: after?.[field],
+      changed: JSON.stringify(before?.[field]) !== JSON.stringify(after?.[field]),
+    }));
+  return [...rows.filter(({ changed }) => changed), ...rows.filter(({ changed }) => !changed)];
+}
+
+/** "rangeLow" → "Range low". */
+function labelOf(field: string): string {
+  const words = field.replace(/([a-z])([A-Z])/g, '$1 $2').toLowerCase();
+  return words[0]!.toUpperCase() + words.slice(1);
+}

@@ -1,0 +1,13 @@
+import { formatClock, formatZoneInWords } from '../../../shared/rules/format.ts';
+
+/** Every zone this browser knows, as choices; UTC first. */
+export function zoneChoices(): { value: string; label: string }[] {
+  const names = ['UTC', ...Intl.supportedValuesOf('timeZone').filter((name) => name !== 'UTC')];
+  return names.map((name) => ({ value: name, label: name.replaceAll('_', ' ') }));
+}
+
+/** "Europe/Copenhagen, now 14:05 (UTC+1)". */
+export function zoneNow(zone: string, now: Date): string {
+  const [, offset = 'UTC'] = /\((.*)\)$/.exec(formatZoneInWords(now, zone, '')) ?? [];
+  return `${zone.replaceAll('_', ' ')}, now ${formatClock(now, zone)} (${offset})`;
+}

@@ -1,0 +1,144 @@
+import { sheetBody, type Consumer, type SheetFields } from '../../../shared/contracts/register.ts';
+import { readDuration, splitDuration, type DurationText } from './durations.ts';
+import { numberText, readNumber } from './number-text.ts';
+
+const numberFields = [
+  'rangeLow',
+  'rangeHigh',
+  'allowedErrorAbsolute',
+  'allowedErrorPercent',
+  'allowedSpread',
+  'decimals',
+  'updateFactor',
+  'recalibrationMonths',
+  'reviewMonths',
+] as const;
+const durationFields = [
+  'transportDelayMs',
+  'pairingWindowMs',
+  'promisedReferenceMs',
+  'historyEveryMs',
+] as const;
+type NumberField = (typeof numberFields)[number];
+type DurationField = (typeof durationFields)[number];
+
+/** A data sheet as it is typed: figures and durations as texts, so that nothing is lost while it can't be read yet. */
+export type SheetForm = Omit<SheetFields, NumberField | DurationField | 'unitId'> & {
+  unitId: number | null;
+} & Record<NumberField, string> &
+  Record<DurationField, DurationText>;
+
+export type SheetErrors = Record<string, string>;
+export type ImportanceClass = SheetFields['importanceClass'];
+
+const hour = 3_600_000;
+const day = 24 * hour;
+
+/** What usually holds for a class (common practice, no source); a person may change each. */
+export const classDefaults: Record<
+  ImportanceClass,
+  Pick<SheetFields, 'promisedReferenceMs' | 'recalibrationMonths' | 'reviewMonths'>
+> = {
+  A: { promisedReferenceMs: 2 * day, recalibrationMonths: 3, reviewMonths: 12 },
+  B: { promisedReferenceMs: 7 * day, recalibrationMonths: 6, reviewMonths: 12 },
+  C: { promisedReferenceMs: 28 * day, recalibrationMonths: 12, reviewMonths: 24 },
+};
+
+export function blankForm(): SheetForm {
+  return toForm({
+    unitId: 0,
+    tagName: '',
+    name: '',
+    quantity: '',
+    unit: '',
+    decimals: 1,
+    rangeLow: null,
+    rangeHigh: null,
+    purpose: '',
+    importanceClass: 'B',
+    consumers: [],
+    samplePointId: null,
+    methodId: null,
+    transportDelayMs: 0,
+    pairingWindowMs: 10 * 60_000,
+    steadyStateGate: true,
+    allowedErrorAbsolute: null,
+    allowedErrorPercent: null,
+    allowedSpread: null,
+    historyArrives: 'live',
+    historyEveryMs: 60_000,
+    correctionMode: 'propose',
+    updateFactor: 0.2,
+    fallback: '',
+    limitations: '',
+    ownerId: null,
+    deputyId: null,
+    approverId: null,
+    ...classDefaults.B,
+  });
+}
+
+export function toForm(fields: SheetFields): SheetForm {
+  const numbers = Object.fromEntries(numberFields.map((name) => [name, numberText(fields[name])]));
+  const durations = Object.fromEntries(durationFields.map((name) => [name, splitDuration(fields[name])]));
+  return {
+    ...fields,
+    consumers: fields.consumers.map((consumer) => ({ ...consumer })),
+    unitId: fields.unitId === 0 ? null : fields.unitId,
+    ...(numbers as Record<NumberField, string>),
+    ...(durations as Record<DurationField, DurationText>),
+  };
+}
+
+/** Changes the class, and with it the intervals that still stand as the class before had them. */
+export function withClass(form: SheetForm, importanceClass: ImportanceClass): SheetForm {
+  const [before, after] = [classDefaults[form.importanceClass], classDefaults[importanceClass]];
+  const months = (field: 'recalibrationMonths' | 'reviewMonths') =>
+    form[field].trim() === String(before[field]) ? String(after[field]) : form[field];
+  const promised = readDuration(form.promisedReferenceMs);
+  const untouched = 'ms' in promised && promised.ms === before.promisedReferenceMs;
+  return {
+    ...form,
+    importanceClass,
+    recalibrationMonths: months('recalibrationMonths'),
+    reviewMonths: months('reviewMonths'),
+    promisedReferenceMs: untouched ? splitDuration(after.promisedReferenceMs) : form.promisedReferenceMs,
+  };
+}
+
+/** The least class that the consumers call for: closed loop, release and emission are A. */
+export function classFor(consumers: readonly Consumer[]): ImportanceClass {
+  return consumers.some(({ kind }) => kind !== 'display') ? 'A' : 'B';
+}
+
+const needed: Partial<Record<NumberField, string>> = {
+  decimals: 'Write how many decimals are shown, 0 to 6.',
+  updateFactor: 'Write a factor above 0, at most 1.',
+  recalibrationMonths: 'Write after how many months.',
+  reviewMonths: 'Write after how many months.',
+};
+
+/** What is typed as a sheet to be saved, or a sentence for each field that can't be used. */
+export function readForm(form: SheetForm): { fields: SheetFields } | { errors: SheetErrors } {
+  const errors: SheetErrors = {};
+  const values: Record<string, unknown> = { ...form };
+  if (form.unitId === null) errors.unitId = 'Choose the unit of plant.';
+  for (const name of numberFields) {
+    const read = readNumber(form[name]);
+    if ('wrong' in read) errors[name] = read.wrong;
+    else if (read.value === null && needed[name]) errors[name] = needed[name];
+    else values[name] = read.value;
+  }
+  for (const name of durationFields) {
+    const read = readDuration(form[name]);
+    if ('wrong' in read) errors[name] = read.wrong;
+    else values[name] = read.ms;
+  }
+  const parsed = sheetBody.safeParse(values);
+  if (parsed.success && Object.keys(errors).length === 0) return { fields: parsed.data };
+  for (const issue of parsed.error?.issues ?? []) {
+    errors[issue.path.join('.')] ??= issue.message;
+    errors[String(issue.path[0])] ??= issue.message;
+  }
+  return { errors };
+}
