@@ -9,10 +9,12 @@ import type { Context } from './context.ts';
 import { auditRoutes } from './features/audit/routes.ts';
 import { boardRoutes } from './features/board/routes.ts';
 import { judgingRoutes } from './features/judging/routes.ts';
+import { historyRoutes } from './features/history/routes.ts';
 import { mailRoutes } from './features/mail/routes.ts';
 import { peopleRoutes } from './features/people/routes.ts';
 import { registerRoutes } from './features/register/routes.ts';
 import { runRoutes } from './features/runs/routes.ts';
+import { sampleRoutes } from './features/samples/routes.ts';
 import { siteRoutes } from './features/sites/routes.ts';
 import { tagRoutes } from './features/tags/routes.ts';
 import { openApiDocument } from './http/openapi.ts';
@@ -66,6 +68,8 @@ const features = [
   peopleRoutes,
   siteRoutes,
   tagRoutes,
+  historyRoutes,
+  sampleRoutes,
   runRoutes,
   registerRoutes,
   judgingRoutes,

@@ -32,6 +32,8 @@ export interface Config {
   port: number;
   publicUrl: string;
   smtpUrl: string | undefined;
+  /** No SMTP server was named: the local one keeps the mail, to be read in the application. */
+  localMail: boolean;
   mailFrom: string;
   trustProxy: number;
   logLevel: string;
@@ -55,6 +57,7 @@ export function readConfig(environment: Record<string, string | undefined>): Con
     port: env.PORT,
     publicUrl: (env.PUBLIC_URL ?? `http://${env.HOST}:${env.PORT}`).replace(/\/$/, ''),
     smtpUrl: env.SMTP_URL,
+    localMail: env.SMTP_URL === undefined,
     mailFrom: env.MAIL_FROM,
     trustProxy: env.TRUST_PROXY,
     logLevel: env.LOG_LEVEL,

@@ -1,6 +1,6 @@
 import { DrizzlePostgreSQLAdapter } from '@lucia-auth/adapter-drizzle';
 import { type Adapter, type DatabaseSession, Lucia, TimeSpan } from 'lucia';
-import type { Db } from '../db/client.ts';
+import type { Queryable } from '../db/client.ts';
 import { persons, sessions } from '../db/schema/index.ts';
 import { hashToken } from './token.ts';
 
@@ -54,8 +54,8 @@ class HashingAdapter implements Adapter {
 
 export const sessionCookie = 'cupel_session';
 
-/** Sessions of 14 days, extended while used. */
-export function createSessions(db: Db, secure: boolean) {
+/** Sessions of 14 days, extended while used; inside a transaction they come and go with it. */
+export function createSessions(db: Queryable, secure: boolean) {
   return new Lucia(
     new HashingAdapter(new DrizzlePostgreSQLAdapter(db as never, sessions, persons as never)),
     {

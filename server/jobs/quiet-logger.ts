@@ -5,6 +5,6 @@ import type { Context } from '../context.ts';
 export function quietLogger(context: Context): Logger {
   return new Logger(() => (level, message, meta) => {
     const levels = { error: 'warn', warning: 'warn', info: 'debug', debug: 'debug' } as const;
-    context.log[levels[level as keyof typeof levels] ?? 'debug']({ error: meta?.error }, message);
+    context.log[levels[level as keyof typeof levels] ?? 'debug']({ err: meta?.error }, message);
   });
 }

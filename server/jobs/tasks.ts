@@ -1,5 +1,7 @@
 import type { JobHelpers, TaskList } from 'graphile-worker';
 import type { Context } from '../context.ts';
+import { importHistory } from '../features/history/import.ts';
+import { rollUp } from '../features/history/roll-up.ts';
 import { judgeNow } from '../features/judging/service.ts';
 import { queueJudgingOfAll } from '../features/judging/all.ts';
 import { sendQueuedMail } from '../features/mail/send.ts';
@@ -12,6 +14,8 @@ type Task<N extends JobName> = (context: Context, payload: Jobs[N], helpers: Job
 /** One function for each kind of job. */
 const tasks: { [N in JobName]?: Task<N> } = {
   'send-mail': sendQueuedMail,
+  'import-history': importHistory,
+  'roll-up': rollUp,
   'unlock-dead-workers': unlockDeadWorkers,
   'clean-up': cleanUp,
   estimate: (context, payload) => context.compute.run('estimate', payload, context.clock()),

@@ -2,7 +2,7 @@ import { constants } from 'node:os';
 import { sentenceFor } from './messages.mjs';
 
 // Everything must be over within two seconds of a signal; what is left for the database is far more than it needs.
-const graceMs = 1400;
+const graceMs = 1000;
 
 const jobs = [];
 const children = new Map();
@@ -18,7 +18,7 @@ export function atEnd(job) {
 /** `whenEnding`: 'terminate' the child, 'await' its own end, or 'leave' it to finish alone. */
 export function watchChild(child, whenEnding) {
   children.set(child, whenEnding);
-  child.once('exit', () => children.delete(child));
+  for (const event of ['exit', 'error']) child.once(event, () => children.delete(child));
 }
 
 async function endChildren() {

@@ -61,8 +61,12 @@ export function ewmaChart(
     state = step.state;
     points.push(step.point);
     if (step.point.signal) firstSignal ??= i;
+    if (!Number.isFinite(state.z)) return refuse('out-of-range', { field: 'errors', figure: errors[i] });
   }
-  return finiteAnswer({ points, firstSignal });
+  const last = points[points.length - 1]!;
+  if (!Number.isFinite(last.upper - last.lower))
+    return refuse('out-of-range', { field: 'width', figure: design.width });
+  return { ok: true, points, firstSignal };
 }
 
 /** CUSUM design: `sd` of a single error; reference value `k` and decision interval `h` in SDs; `target` default 0. */
@@ -131,8 +135,11 @@ export function cusumChart(
     state = step.state;
     points.push(step.point);
     if (step.point.signal) firstSignal ??= i;
+    if (!Number.isFinite(state.high + state.low)) {
+      return refuse('out-of-range', { field: 'errors', figure: errors[i] });
+    }
   }
-  return finiteAnswer({ points, firstSignal });
+  return { ok: true, points, firstSignal };
 }
 
 /**

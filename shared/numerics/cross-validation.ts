@@ -1,6 +1,7 @@
 import { countRefusal, finiteAnswer } from './input-checks.ts';
 import { fitPls, plsPredictions } from './pls.ts';
 import type { PlsData } from './pls.ts';
+import { regressionRefusal } from './design-matrix.ts';
 import type { RegressionData } from './design-matrix.ts';
 import { fitLeastSquares, predictAt } from './regression.ts';
 import { fitRidge } from './ridge.ts';
@@ -83,8 +84,9 @@ function overFolds(
   options: { folds: number; scheme: FoldScheme },
   predict: (training: PlsData, test: number[][]) => number[][] | Refusal,
 ): Result<CrossValidation> {
-  const n = data.y?.length ?? 0;
-  const made = chronologicalFolds(n, options.folds, options.scheme);
+  const refusal = regressionRefusal({ ...data, intercept: true }, 0);
+  if (refusal) return refusal;
+  const made = chronologicalFolds(data.y.length, options.folds, options.scheme);
   if (!made.ok) return made;
   let squares: Float64Array | null = null;
   let predicted = 0;

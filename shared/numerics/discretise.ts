@@ -1,6 +1,14 @@
 import { Matrix } from 'ml-matrix';
-import { attempt } from './attempt.ts';
-import { oneNorm, readMatrix, readPositive, readSemidefinite, rowsOf, symmetrise } from './linear-algebra.ts';
+import { attempt, giveUp } from './attempt.ts';
+import {
+  oneNorm,
+  readMatrix,
+  readPositive,
+  readSemidefinite,
+  readSquare,
+  rowsOf,
+  symmetrise,
+} from './linear-algebra.ts';
 import { expm } from './matrix-exponential.ts';
 import type { Result } from './result.ts';
 import { readModel, readNames } from './state-space.ts';
@@ -16,7 +24,7 @@ export type SampledMatrices = { A: number[][]; B: number[][] };
  */
 export function zeroOrderHold(A: Rows, B: Rows, step: number): Result<SampledMatrices> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     const held = holdInputs(a, readMatrix(B, 'B', { rows: a.rows }), readPositive(step, 'step'));
     return { A: rowsOf(held.Ad), B: rowsOf(held.Bd) };
   });
@@ -45,13 +53,16 @@ export function processNoise(
   step: number,
 ): Result<{ A: number[][]; Q: number[][] }> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     const g = readMatrix(G, 'G', { rows: a.rows });
     const density = g.mmul(readSemidefinite(q, 'q', g.columns)).mmul(g.transpose());
     const { Ad, Qd } = integrateNoise(a, density, readPositive(step, 'step'));
     return { A: rowsOf(Ad), Q: rowsOf(Qd) };
   });
 }
+
+/** Doublings of the interval: 2⁶⁰ times the fastest time constant is no sampling interval. */
+const mostDoublings = 60;
 
 /**
  * Van Loan's block exponential (IEEE Trans. Automatic Control 23 (1978) 395–404): with exp([[−A, W], [0, Aᵀ]] h) =
@@ -60,7 +71,8 @@ export function processNoise(
  */
 export function integrateNoise(A: Matrix, W: Matrix, step: number): { Ad: Matrix; Qd: Matrix } {
   const n = A.rows;
-  const s = Math.max(0, Math.ceil(Math.log2(Math.max(oneNorm(A) * step, 1))));
+  const s = Math.ceil(Math.log2(Math.max(oneNorm(A) * step, 1)));
+  if (s > mostDoublings) return giveUp('out-of-range', { field: 'step', figure: step });
   const h = step / 2 ** s;
   const block = Matrix.zeros(2 * n, 2 * n);
   block.setSubMatrix(Matrix.mul(A, -h), 0, 0);

@@ -1,6 +1,7 @@
 import { cusumDesignRefusal, cusumStart, cusumStep } from './control-charts.ts';
 import type { CusumDesign, CusumState } from './control-charts.ts';
-import { finiteAnswer, vectorRefusal } from './input-checks.ts';
+import { vectorRefusal } from './input-checks.ts';
+import { refuse } from './result.ts';
 import type { Result } from './result.ts';
 
 /**
@@ -70,8 +71,9 @@ export function driftStep(
   const { state: cusum, point } = cusumStep(before, error, design);
   const highTotal = cusum.high > 0 ? state.highTotal + error : 0;
   const lowTotal = cusum.low > 0 ? state.lowTotal + error : 0;
-  const sums = { cusum, highTotal, lowTotal };
-  const next = point.signal ? beyond(state, sums, point.signal) : within(state, sums, design.h);
+  const standing = point.signal ? beyond(state, cusum, point.signal) : within(state, cusum, design.h);
+  const { status, side, onset, crossedAt } = standing;
+  const next: DriftState = { cusum, status, side, onset, crossedAt, highTotal, lowTotal };
   const since = next.side === 'high' ? cusum.highSince : next.side === 'low' ? cusum.lowSince : null;
   const count = since === null ? 0 : cusum.n - since;
   const total = next.side === 'high' ? highTotal : lowTotal;
@@ -92,27 +94,27 @@ export function driftStep(
   };
 }
 
-type Sums = Pick<DriftState, 'cusum' | 'highTotal' | 'lowTotal'>;
+type Standing = Pick<DriftState, 'status' | 'side' | 'onset' | 'crossedAt'>;
+
+const inControl: Standing = { status: 'in-control', side: null, onset: null, crossedAt: null };
 
 /** A sum beyond h: a new signal, one that waits for its confirmation, or one that stands. */
-function beyond(state: DriftState, sums: Sums, side: 'high' | 'low'): DriftState {
-  const last = sums.cusum.n - 1;
-  const onset = side === 'high' ? sums.cusum.highSince : sums.cusum.lowSince;
+function beyond(state: DriftState, cusum: CusumState, side: 'high' | 'low'): Standing {
+  const last = cusum.n - 1;
+  const onset = side === 'high' ? cusum.highSince : cusum.lowSince;
   const sameSide = state.side === side;
   const crossedAt = sameSide && state.crossedAt !== null ? state.crossedAt : last;
   const stands = sameSide && state.status === 'confirmed';
   const confirmed = stands || last - crossedAt >= samplesToConfirm;
-  return { ...sums, status: confirmed ? 'confirmed' : 'signal', side, onset, crossedAt };
+  return { status: confirmed ? 'confirmed' : 'signal', side, onset, crossedAt };
 }
 
 /** Neither sum beyond h: a standing signal stays until both are below h/2; its crossing lapses at the second sample. */
-function within(state: DriftState, sums: Sums, h: number): DriftState {
-  const cleared = sums.cusum.high < h / 2 && sums.cusum.low < h / 2;
-  if (state.status === 'in-control' || cleared) {
-    return { ...sums, status: 'in-control', side: null, onset: null, crossedAt: null };
-  }
-  const waited = state.crossedAt !== null && sums.cusum.n - 1 - state.crossedAt >= samplesToConfirm;
-  return { ...state, ...sums, crossedAt: waited ? null : state.crossedAt };
+function within(state: DriftState, cusum: CusumState, h: number): Standing {
+  if (state.status === 'in-control' || (cusum.high < h / 2 && cusum.low < h / 2)) return inControl;
+  const waited = state.crossedAt !== null && cusum.n - 1 - state.crossedAt >= samplesToConfirm;
+  const { status, side, onset } = state;
+  return { status, side, onset, crossedAt: waited ? null : state.crossedAt };
 }
 
 /**
@@ -137,6 +139,9 @@ export function driftHistory(
     const step = driftStep(state, errors[i]!, design);
     state = step.state;
     points.push(step.point);
+    if (!Number.isFinite(state.cusum.high + state.cusum.low + state.highTotal - state.lowTotal)) {
+      return refuse('out-of-range', { field: 'errors', figure: errors[i] });
+    }
   }
-  return finiteAnswer({ points, state });
+  return { ok: true, points, state };
 }

@@ -55,7 +55,7 @@ export function durbinWatsonBounds(
   alpha = 0.05,
 ): Result<{ lower: number; upper: number }> {
   const refusal =
-    countRefusal('n', n, 2, 10_000) ??
+    countRefusal('n', n, 2, 2000) ??
     countRefusal('regressors', regressors, 1, 100) ??
     optionRefusal('alpha', alpha, 0, 0.5, 'open');
   if (refusal) return refusal;

@@ -4,8 +4,8 @@ import {
   eigenvaluesOf,
   oneNorm,
   readColumn,
-  readMatrix,
   readNumber,
+  readSquare,
   spectralRadius,
 } from './linear-algebra.ts';
 import { dlyap } from './lyapunov.ts';
@@ -20,7 +20,7 @@ const longestDecay = 2_000_000;
 /** ‖Mᵏ e₀‖₂ for k = 0 … `steps`: the error of a linear observer with error matrix M (n×n) after k steps. */
 export function errorNorms(M: Rows, initialError: number[], steps: number): Result<{ norms: number[] }> {
   return attempt(() => {
-    const matrix = readMatrix(M, 'M', { columns: M.length });
+    const matrix = readSquare(M, 'M');
     let e = readColumn(initialError, 'initialError', matrix.rows);
     if (!Number.isInteger(steps) || steps < 0 || steps > longestDecay) {
       return giveUp('out-of-range', { field: 'steps', figure: steps });
@@ -40,7 +40,7 @@ export function errorNorms(M: Rows, initialError: number[], steps: number): Resu
  */
 export function settlingSteps(M: Rows, initialError: number[], fraction = 0.02): Result<{ steps: number }> {
   return attempt(() => {
-    const matrix = readMatrix(M, 'M', { columns: M.length });
+    const matrix = readSquare(M, 'M');
     const e0 = readColumn(initialError, 'initialError', matrix.rows);
     return { steps: settle(matrix, e0, readNumber(fraction, 'fraction')) };
   });
@@ -74,7 +74,7 @@ export function dominantSettling(
   fraction = 0.02,
 ): Result<{ timeConstant: number; settling: number }> {
   return attempt(() => {
-    const matrix = readMatrix(M, 'M', { columns: M.length });
+    const matrix = readSquare(M, 'M');
     const domain = readDomain(time);
     const constants = eigenvaluesOf(matrix, 'M').map((e) => timeConstantOf(e, domain, oneNorm(matrix)));
     if (!(readNumber(fraction, 'fraction') > 0))

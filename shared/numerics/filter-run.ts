@@ -57,12 +57,14 @@ export function readSetup(model: ModelRows, noise: NoiseRows): FilterSetup {
 export function finish(runner: Runner): FilterSeries {
   predictNext(runner);
   const { x, P, n, z, sd, nis, white, sums } = runner.work;
-  const [readings, logDet, quad] = sums as unknown as [number, number, number];
+  const [readings, logDet, quad, check] = sums as unknown as [number, number, number, number];
   const logLikelihood = -0.5 * (readings * Math.log(2 * Math.PI) + logDet + quad);
   const rows = Array.from({ length: n }, (_, i) => Array.from(P.subarray(i * n, (i + 1) * n)));
-  if (![logLikelihood, ...x, ...P].every(Number.isFinite)) {
+  if (![logLikelihood, check, ...x, ...P].every(Number.isFinite)) {
     requireFinite({ u: runner.work.u, y: runner.y });
-    return giveUp('unstable', { field: 'A' });
+    return [...x, ...P].every(Number.isFinite)
+      ? giveUp('out-of-range', { field: 'y' })
+      : giveUp('unstable', { field: 'A' });
   }
   const next = { x0: Array.from(x), P0: rows };
   return {

@@ -89,7 +89,7 @@ function filterWork(
     yStart: 0,
     x: flat(start.x),
     P: flat(start.P),
-    sums: new Float64Array(3),
+    sums: new Float64Array(4),
   };
 }
 

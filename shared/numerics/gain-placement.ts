@@ -7,6 +7,7 @@ import {
   readMatrix,
   readNumber,
   readPositive,
+  readSquare,
   rowsOf,
   singularValues,
   solveFor,
@@ -51,7 +52,7 @@ export function placeGain(
 ): Result<PlacedGain> {
   return attempt(() => {
     const time = readDomain(model);
-    const A = readMatrix(model.A, 'A', { columns: model.A?.length });
+    const A = readSquare(model.A, 'A');
     const C = readMatrix(model.C, 'C', { columns: A.rows });
     const free = freeStates(A, exactStates);
     const part = A.selection(free, free);
@@ -78,7 +79,7 @@ export function placeGain(
 /** Predictor gain K = A L of a filter gain L (A n×n, L n×m). */
 export function predictorGainOf(A: Rows, filterGain: Rows): Result<{ predictorGain: number[][] }> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     return { predictorGain: rowsOf(a.mmul(readMatrix(filterGain, 'filterGain', { rows: a.rows }))) };
   });
 }

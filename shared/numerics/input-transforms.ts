@@ -15,7 +15,11 @@ const bad = 2;
 export function laggedInput(series: InputSeries, lagMs: number): Result<InputSeries> {
   const refusal = seriesRefusal(series) ?? optionRefusal('lagMs', lagMs, 0, 1e15);
   if (refusal) return refusal;
-  return { ok: true, at: series.at.map((at) => at + lagMs), value: series.value, quality: series.quality };
+  return sound(
+    series.at.map((at) => at + lagMs),
+    Float64Array.from(series.value),
+    Uint8Array.from(series.quality),
+  );
 }
 
 /**
@@ -56,7 +60,7 @@ export function filteredInput(
     );
     previous = i;
   }
-  return { ok: true, at: series.at, value, quality };
+  return sound(series.at, value, quality);
 }
 
 /** What is done to the value of an input before it enters a regression. */
@@ -88,7 +92,7 @@ export function transformedInput(series: InputSeries, transform: InputTransform)
     if (result === null) quality[i] = bad;
     else value[i] = result;
   }
-  return { ok: true, at: series.at, value, quality };
+  return sound(series.at, value, quality);
 }
 
 /**
@@ -106,7 +110,17 @@ export function productInput(a: InputSeries, b: InputSeries, holdLimitMs: number
     if (Number.isFinite(product)) value[i] = product;
     else quality[i] = bad;
   }
-  return { ok: true, at: a.at, value, quality };
+  return sound(a.at, value, quality);
+}
+
+/** A reading without a number is Bad and says 0, so that no NaN goes any further. */
+function sound(at: Float64Array, value: Float64Array, quality: Uint8Array): Result<InputSeries> {
+  for (let i = 0; i < value.length; i++) {
+    if (Number.isFinite(value[i])) continue;
+    value[i] = 0;
+    quality[i] = bad;
+  }
+  return { ok: true, at, value, quality };
 }
 
 function isUsable(series: InputSeries, i: number): boolean {

@@ -3,7 +3,7 @@ import { attemptSeries, giveUp } from './attempt.ts';
 import { holdInputs, integrateNoise } from './discretise.ts';
 import { predict, readStart, update } from './kalman.ts';
 import type { FilterStart, FilterStep, Gaussian, Updated } from './kalman.ts';
-import { readMatrix, readNumber, readPositive, readSemidefinite } from './linear-algebra.ts';
+import { readMatrix, readNumber, readPositive, readSemidefinite, readSquare } from './linear-algebra.ts';
 import type { Result } from './result.ts';
 import type { Rows } from './state-space.ts';
 
@@ -72,7 +72,7 @@ function addUp(run: RecordRun, updated: Updated | null): void {
 type ReadModel = ReturnType<typeof readIrregular>;
 
 function readIrregular(model: IrregularModel) {
-  const A = readMatrix(model?.A, 'A', { columns: model?.A?.length });
+  const A = readSquare(model?.A, 'A');
   const n = A.rows;
   const B = model.B === undefined ? new Matrix(n, 0) : readMatrix(model.B, 'B', { rows: n });
   const density = readSemidefinite(model.density, 'density', n);

@@ -1,7 +1,9 @@
 import { Matrix } from 'ml-matrix';
 import { attemptSeries, giveUp } from './attempt.ts';
+import { allFinite } from './input-checks.ts';
 import {
   choleskyOf,
+  finiteOrRefuse,
   readColumn,
   readDefinite,
   readSemidefinite,
@@ -23,14 +25,14 @@ export type Gaussian = { x: Matrix; P: Matrix };
 /** Start of a filter: x[0|−1] and P[0|−1], before the first measurement. */
 export type FilterStart = { x0: number[]; P0: Rows };
 
-/** Time update: x[k+1|k] = A x[k|k] + B u[k], P[k+1|k] = A P[k|k] Aᵀ + Q. */
+/** Time update: x[k+1|k] = A x[k|k] + B u[k], P[k+1|k] = A P[k|k] Aᵀ + Q. Throws `Refused` on overflow. */
 export function predict(
   { x, P }: Gaussian,
   { A, B, Q, u }: { A: Matrix; B: Matrix; Q: Matrix; u: Matrix },
 ): Gaussian {
   return {
-    x: Matrix.add(A.mmul(x), B.mmul(u)),
-    P: symmetrise(A.mmul(P).mmul(A.transpose()).add(Q)),
+    x: finiteOrRefuse(Matrix.add(A.mmul(x), B.mmul(u)), 'A'),
+    P: symmetrise(finiteOrRefuse(A.mmul(P).mmul(A.transpose()).add(Q), 'A')),
   };
 }
 
@@ -59,9 +61,10 @@ export function update({ x, P }: Gaussian, { y, C, R, offset }: Measurement): Up
   const gain = solveFor(S, PCt.transpose(), 'R').transpose();
   const rest = Matrix.sub(Matrix.eye(P.rows), gain.mmul(C));
   const nis = innovation.dot(solveFor(S, innovation, 'R'));
+  if (!Number.isFinite(nis)) return giveUp('out-of-range', { field: 'y' });
   const logDet = 2 * root.diagonal().reduce((sum, d) => sum + Math.log(d), 0);
   return {
-    x: Matrix.add(x, gain.mmul(innovation)),
+    x: finiteOrRefuse(Matrix.add(x, gain.mmul(innovation)), 'C'),
     P: symmetrise(rest.mmul(P).mmul(rest.transpose()).add(gain.mmul(R).mmul(gain.transpose()))),
     innovation,
     S,
@@ -173,6 +176,7 @@ function runFilter(
     run.readings += updated?.innovation.rows ?? 0;
     state = predict(filtered, { A: M.A, B: M.B, Q, u });
   }
+  if (!allFinite(run.z) || !allFinite(run.sd)) return giveUp('out-of-range', { field: 'H' });
   return run;
 }
 

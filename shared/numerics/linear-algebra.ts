@@ -53,6 +53,12 @@ export function readMatrix(
   return M;
 }
 
+/** Reads a square matrix. */
+export function readSquare(value: unknown, field: string): Matrix {
+  const size = Array.isArray(value) ? value.length : 0;
+  return readMatrix(value, field, { rows: size, columns: size });
+}
+
 /** Reads one finite number; refuses `non-finite-input` with the field. */
 export function readNumber(value: unknown, field: string): number {
   if (typeof value !== 'number' || !Number.isFinite(value)) return giveUp('non-finite-input', { field });

@@ -3,7 +3,7 @@ import { attempt, giveUp } from './attempt.ts';
 import {
   eigenvaluesOf,
   largest,
-  readMatrix,
+  readSquare,
   readSymmetric,
   rowsOf,
   solveFor,
@@ -19,7 +19,7 @@ import type { Rows } from './state-space.ts';
  */
 export function discreteLyapunov(A: Rows, Q: Rows): Result<{ X: number[][] }> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     return { X: rowsOf(dlyap(a, readSymmetric(Q, 'Q', a.rows))) };
   });
 }
@@ -30,7 +30,7 @@ export function discreteLyapunov(A: Rows, Q: Rows): Result<{ X: number[][] }> {
  */
 export function continuousLyapunov(A: Rows, Q: Rows): Result<{ X: number[][] }> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     const q = readSymmetric(Q, 'Q', a.rows);
     const n = a.rows;
     if (n > 20) return giveUp('out-of-range', { field: 'A', figure: n });

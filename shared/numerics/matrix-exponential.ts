@@ -1,6 +1,6 @@
 import { Matrix } from 'ml-matrix';
 import { attempt } from './attempt.ts';
-import { finiteOrRefuse, oneNorm, readMatrix, rowsOf, solveFor } from './linear-algebra.ts';
+import { finiteOrRefuse, oneNorm, readSquare, rowsOf, solveFor } from './linear-algebra.ts';
 import type { Result } from './result.ts';
 import type { Rows } from './state-space.ts';
 
@@ -22,7 +22,7 @@ const leadingError13 = 113250775606021113483283660800000000;
  * than ‖A‖, so that nilpotent parts of large norm are not scaled away. Refuses `out-of-range` when e^A overflows.
  */
 export function matrixExponential(A: Rows): Result<{ exponential: number[][] }> {
-  return attempt(() => ({ exponential: rowsOf(expm(readMatrix(A, 'A', { columns: A.length }))) }));
+  return attempt(() => ({ exponential: rowsOf(expm(readSquare(A, 'A'))) }));
 }
 
 /** {@link matrixExponential} on matrices. Throws `Refused`. */

@@ -9,12 +9,12 @@ import {
   readMatrix,
   readNumber,
   readSemidefinite,
+  readSquare,
   rowsOf,
   semidefiniteFactor,
   singularValues,
 } from './linear-algebra.ts';
 import type { Complex } from './linear-algebra.ts';
-import { dlyap } from './lyapunov.ts';
 import type { Result } from './result.ts';
 import { readDomain } from './state-space.ts';
 import type { Rows, TimeDomain } from './state-space.ts';
@@ -62,7 +62,7 @@ export function observability(
 ): Result<Observability> {
   return attempt(() => {
     const time = readDomain(model);
-    const A = readMatrix(model.A, 'A', { columns: model.A?.length });
+    const A = readSquare(model.A, 'A');
     const C = readMatrix(model.C, 'C', { columns: A.rows });
     return inspect(A, C, time, readNumber(tolerance, 'tolerance'));
   });
@@ -75,7 +75,7 @@ export function observability(
 export function noiseReach(model: { A: Rows; Q: Rows } & TimeDomain): Result<Observability> {
   return attempt(() => {
     const time = readDomain(model);
-    const A = readMatrix(model.A, 'A', { columns: model.A?.length });
+    const A = readSquare(model.A, 'A');
     const G = semidefiniteFactor(readSemidefinite(model.Q, 'Q', A.rows), 'Q');
     return inspect(A.transpose(), G.transpose(), time, rankTolerance);
   });
@@ -84,7 +84,7 @@ export function noiseReach(model: { A: Rows; Q: Rows } & TimeDomain): Result<Obs
 /** Rank of the Hautus matrix [A − λI; C]: n when the mode λ is observable (Popov–Belevitch–Hautus test). */
 export function hautusRank(A: Rows, C: Rows, eigenvalue: Complex): Result<{ rank: number }> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     const c = readMatrix(C, 'C', { columns: a.rows });
     const re = readNumber(eigenvalue?.re, 'eigenvalue');
     const im = readNumber(eigenvalue?.im, 'eigenvalue');
@@ -96,25 +96,8 @@ export function hautusRank(A: Rows, C: Rows, eigenvalue: Complex): Result<{ rank
 /** Observability matrix [C; CA; …; CAⁿ⁻¹], (m n)×n, unscaled (Kalman 1960). */
 export function observabilityMatrix(A: Rows, C: Rows): Result<{ matrix: number[][] }> {
   return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
+    const a = readSquare(A, 'A');
     return { matrix: rowsOf(stacked(a, readMatrix(C, 'C', { columns: a.rows }))) };
-  });
-}
-
-/**
- * Observability Gramian W = Σ (Aᵀ)ᵏ Cᵀ C Aᵏ of a stable discrete model, over all k ≥ 0 (W = Aᵀ W A + Cᵀ C) or over the
- * first `horizon` steps. xᵀ W x is the energy in the outputs that an initial state x leaves. Refuses `unstable`.
- */
-export function observabilityGramian(A: Rows, C: Rows, horizon?: number): Result<{ W: number[][] }> {
-  return attempt(() => {
-    const a = readMatrix(A, 'A', { columns: A.length });
-    const c = readMatrix(C, 'C', { columns: a.rows });
-    const energy = c.transpose().mmul(c);
-    if (horizon === undefined) return { W: rowsOf(dlyap(a.transpose(), energy)) };
-    let W = Matrix.zeros(a.rows, a.rows);
-    const steps = Math.min(Math.max(0, Math.floor(readNumber(horizon, 'horizon'))), 100_000);
-    for (let k = 0; k < steps; k++) W = energy.clone().add(a.transpose().mmul(W).mmul(a));
-    return { W: rowsOf(W) };
   });
 }
 

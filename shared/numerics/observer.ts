@@ -46,7 +46,7 @@ export function runObserver(
     const steady = fixedGainWork(M, { L, K, C: M.C, present: all });
     const work = observerWork(M, start, withoutFeedthrough(M, series), N);
     run(work, steady, N);
-    if (!work.x.every(Number.isFinite)) {
+    if (![...work.x, work.sums[3]!].every(Number.isFinite)) {
       requireFinite(series);
       return giveUp('unstable', { field: 'A' });
     }
@@ -55,10 +55,10 @@ export function runObserver(
 }
 
 /** L and K; the predictor form reports x[k|k−1], so its L is taken as 0. */
-function readGain({ form, gain }: ObserverGain, M: ModelMatrices): { L: Matrix; K: Matrix } {
-  const G = readMatrix(gain, 'gain', { rows: M.n, columns: M.m });
-  if (form === 'filter') return { L: G, K: M.A.mmul(G) };
-  if (form === 'predictor') return { L: Matrix.zeros(M.n, M.m), K: G };
+function readGain(gain: ObserverGain, M: ModelMatrices): { L: Matrix; K: Matrix } {
+  const G = readMatrix(gain?.gain, 'gain', { rows: M.n, columns: M.m });
+  if (gain.form === 'filter') return { L: G, K: M.A.mmul(G) };
+  if (gain.form === 'predictor') return { L: Matrix.zeros(M.n, M.m), K: G };
   return giveUp('out-of-range', { field: 'form' });
 }
 
@@ -92,7 +92,7 @@ function observerWork(M: ModelMatrices, start: Matrix, { u, y }: GridSeries, N: 
       nis: none,
       white: none,
     },
-    sums: new Float64Array(3),
+    sums: new Float64Array(4),
   };
 }
 
@@ -131,5 +131,6 @@ function stepWithGaps(work: FilterWork, steady: SteadyWork, k: number, next: Flo
     for (let i = 0; i < n; i++) next[i]! += B[j * n + i]! * u[k * p + j]!;
   }
   work.z[k] = z;
+  work.sums[3]! += z - z;
   x.set(next);
 }

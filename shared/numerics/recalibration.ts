@@ -87,7 +87,7 @@ export function judgeRecalibration(
   options: RecalibrationOptions,
 ): Result<RecalibrationJudgement> {
   const { firstTraining = 8, procedures = [] } = options;
-  const refusal = optionsRefusal(samples, options) ?? samplesRefusal(samples, options.current, 1);
+  const refusal = samplesRefusal(samples, options.current, 1) ?? optionsRefusal(samples, options);
   if (refusal) return refusal;
   const n = samples.raw.length;
   if (n < firstTraining + fewestOrigins) return notEnough('raw', firstTraining + fewestOrigins, n);

@@ -1,5 +1,4 @@
 import { finiteAnswer, optionRefusal, vectorRefusal } from './input-checks.ts';
-import { wrongShape } from './result.ts';
 import type { Result } from './result.ts';
 
 /** Where recursive least squares stands: parameters (length p) and their covariance over the noise variance (p×p, by rows). */
@@ -24,13 +23,15 @@ export function recursiveStep(
   y: number,
   forgetting: number,
 ): Result<RecursiveFit & { error: number }> {
+  const broken = vectorRefusal('parameters', fit.parameters, 1);
+  if (broken) return broken;
   const p = fit.parameters.length;
   const refusal =
+    vectorRefusal('covariance', fit.covariance, 1, p * p) ??
     vectorRefusal('x', x, 1, p) ??
     optionRefusal('y', y, -Number.MAX_VALUE, Number.MAX_VALUE) ??
     optionRefusal('forgetting', forgetting, Number.MIN_VALUE, 1);
   if (refusal) return refusal;
-  if (fit.covariance.length !== p * p) return wrongShape('covariance', p * p, fit.covariance.length);
   const projected = new Float64Array(p);
   let spread = forgetting;
   let error = y;

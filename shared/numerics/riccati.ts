@@ -9,6 +9,7 @@ import {
   readDefinite,
   readMatrix,
   readSemidefinite,
+  readSquare,
   readSymmetric,
   rowsOf,
   semidefiniteFactor,
@@ -47,7 +48,7 @@ const mostDoublings = 60;
  */
 export function solveDare(equation: { A: Rows; B: Rows; Q: Rows; R: Rows; S?: Rows }): Result<DareSolution> {
   return attempt(() => {
-    const A = readMatrix(equation?.A, 'A', { columns: equation?.A?.length });
+    const A = readSquare(equation?.A, 'A');
     const B = readMatrix(equation.B, 'B', { rows: A.rows });
     const Q = readSymmetric(equation.Q, 'Q', A.rows);
     const R = readSymmetric(equation.R, 'R', B.columns);
@@ -192,7 +193,7 @@ export type SteadyFilter = {
  */
 export function steadyFilter(model: { A: Rows; C: Rows; Q: Rows; R: Rows }): Result<SteadyFilter> {
   return attempt(() => {
-    const A = readMatrix(model?.A, 'A', { columns: model?.A?.length });
+    const A = readSquare(model?.A, 'A');
     const C = readMatrix(model.C, 'C', { columns: A.rows });
     const Q = readSemidefinite(model.Q, 'Q', A.rows);
     const R = readDefinite(model.R, 'R', C.rows);

@@ -1,4 +1,4 @@
-import { Matrix, solve } from 'ml-matrix';
+import { LuDecomposition, Matrix } from 'ml-matrix';
 import { normalCdf, normalDensity, normalQuantile } from './distributions.ts';
 import { gaussLegendre } from './gauss-legendre.ts';
 import { finiteAnswer, firstRefusal, optionRefusal } from './input-checks.ts';
@@ -87,7 +87,7 @@ export function ewmaRunLength(options: EwmaRunLengthOptions): Result<RunLength> 
 export function cusumIntervalFor(runLength: number, k: number): Result<{ h: number }> {
   const refusal = wantedRefusal(runLength) ?? optionRefusal('k', k, 0, 3);
   if (refusal) return refusal;
-  return limitFor('h', runLength, 0.01, 50, (h) => cusumRunLength({ k, h }));
+  return limitFor('h', runLength, 0.01, 30, (h) => cusumRunLength({ k, h }));
 }
 
 /** EWMA limit width (SDs of z) for a wanted in-control run length, independent normal errors, fixed limits. */
@@ -114,7 +114,7 @@ function cusumLength(drift: number, h: number, start: number): number {
   for (let i = 0; i < size; i++) {
     for (let j = 0; j < size; j++) system.set(i, j, system.get(i, j) - step(nodes[i]!, j));
   }
-  const lengths = solve(system, Matrix.ones(size, 1)).getColumn(0);
+  const lengths = solveForLengths(system);
   if (start === 0) return lengths[0]!;
   let length = 1;
   for (let j = 0; j < size; j++) length += step(start, j) * lengths[j]!;
@@ -131,7 +131,14 @@ function collocate(
     for (const [j, to] of nodes.entries())
       system.set(i, j, system.get(i, j) - weights[j]! * density(from, to));
   }
-  return solve(system, Matrix.ones(nodes.length, 1)).getColumn(0);
+  return solveForLengths(system);
+}
+
+/** L of (I − K) L = 1; infinite throughout where the chart never signals within the precision of numbers. */
+function solveForLengths(system: Matrix): number[] {
+  const decomposition = new LuDecomposition(system);
+  if (decomposition.isSingular()) return new Array<number>(system.rows).fill(Infinity);
+  return decomposition.solve(Matrix.ones(system.rows, 1)).getColumn(0);
 }
 
 /** Enough Gauss-Legendre nodes for a kernel of unit SD over a range of so many SDs. */
@@ -158,7 +165,7 @@ function wantedRefusal(runLength: number): Refusal | null {
   return optionRefusal('runLength', runLength, 2, 1e9);
 }
 
-/** Bisection on the logarithm of a run length that grows with the limit. */
+/** False position (Illinois) on the logarithm of a run length, which grows almost linearly with the limit. */
 function limitFor<Name extends string>(
   name: Name,
   wanted: number,
@@ -166,16 +173,26 @@ function limitFor<Name extends string>(
   high: number,
   lengthAt: (limit: number) => Result<RunLength>,
 ): Result<Record<Name, number>> {
-  let [below, above] = [low, high];
-  for (let step = 0; step < 60 && above - below > 1e-9; step++) {
-    const middle = (below + above) / 2;
-    const length = lengthAt(middle);
+  const excess = (limit: number) => {
+    const length = lengthAt(limit);
     // A run length beyond all bounds is longer than any wanted one.
-    if (length.ok && length.runLength < wanted) below = middle;
-    else above = middle;
+    return Math.log((length.ok ? length.runLength : 1e13) / wanted);
+  };
+  let [left, right] = [low, high];
+  let [below, above] = [excess(low), excess(high)];
+  if (below > 0 || above < 0) return refuse('out-of-range', { field: 'runLength', figure: wanted });
+  for (let step = 0; step < 200 && right - left > 1e-10; step++) {
+    const middle = (left * above - right * below) / (above - below);
+    const found = excess(middle);
+    if (Math.abs(found) < 1e-10) {
+      left = right = middle;
+    } else if (found < 0) {
+      [left, below] = [middle, found];
+      above /= 2;
+    } else {
+      [right, above] = [middle, found];
+      below /= 2;
+    }
   }
-  const limit = (below + above) / 2;
-  if (limit - low < 1e-6 || high - limit < 1e-6)
-    return refuse('out-of-range', { field: 'runLength', figure: wanted });
-  return { ok: true, [name]: limit } as { ok: true } & Record<Name, number>;
+  return { ok: true, [name]: (left + right) / 2 } as { ok: true } & Record<Name, number>;
 }

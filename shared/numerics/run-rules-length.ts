@@ -1,4 +1,4 @@
-import { Matrix, solve } from 'ml-matrix';
+import { LuDecomposition, Matrix } from 'ml-matrix';
 import { normalCdf } from './distributions.ts';
 import { finiteAnswer, optionRefusal } from './input-checks.ts';
 import { notEnough, outOfRange, refuse } from './result.ts';
@@ -45,7 +45,9 @@ export function runRulesRunLength(
   for (const [from, row] of moves.entries()) {
     for (const { to, probability } of row) system.set(from, to, system.get(from, to) - probability);
   }
-  const runLength = solve(system, Matrix.ones(states.size, 1)).get(0, 0);
+  const decomposition = new LuDecomposition(system);
+  if (decomposition.isSingular()) return refuse('ill-conditioned', { field: 'rules' });
+  const runLength = decomposition.solve(Matrix.ones(states.size, 1)).get(0, 0);
   if (!(runLength > 0 && runLength < 1e12)) return refuse('ill-conditioned', { field: 'rules' });
   return finiteAnswer({ runLength, states: states.size });
 }

@@ -17,7 +17,7 @@ export function smooth(steps: FilterStep[]): Result<{ steps: Smoothed[] }> {
     if (!Array.isArray(steps)) return giveUp('wrong-shape', { field: 'steps' });
     const last = steps[steps.length - 1];
     if (!last) return giveUp('not-enough-data', { field: 'steps', needed: 1, got: 0 });
-    if (steps.some((step) => !(step?.A instanceof Matrix))) return giveUp('wrong-shape', { field: 'steps' });
+    if (!steps.every(isStep)) return giveUp('wrong-shape', { field: 'steps' });
     let ahead: Gaussian = last.filtered;
     const smoothed = [rows(ahead)];
     for (let k = steps.length - 2; k >= 0; k--) {
@@ -26,6 +26,17 @@ export function smooth(steps: FilterStep[]): Result<{ steps: Smoothed[] }> {
     }
     return { steps: smoothed.reverse() };
   });
+}
+
+function isStep(step: FilterStep): boolean {
+  const parts: unknown[] = [
+    step?.A,
+    step?.predicted?.x,
+    step?.predicted?.P,
+    step?.filtered?.x,
+    step?.filtered?.P,
+  ];
+  return parts.every((part) => part instanceof Matrix);
 }
 
 function smoothStep({ filtered, A }: FilterStep, predicted: Gaussian, ahead: Gaussian): Gaussian {

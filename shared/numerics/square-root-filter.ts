@@ -1,9 +1,11 @@
 import { Matrix, QrDecomposition } from 'ml-matrix';
-import { attemptSeries } from './attempt.ts';
+import { attemptSeries, giveUp } from './attempt.ts';
+import { allFinite } from './input-checks.ts';
 import { longestReadableRun, present, readSeries, readStart, requireFinite } from './kalman.ts';
 import type { FilterStart, GridSeries, Measurement } from './kalman.ts';
 import {
   choleskyOf,
+  finiteOrRefuse,
   readDefinite,
   readSemidefinite,
   semidefiniteFactor,
@@ -62,9 +64,11 @@ export function squareRootFilter(
       }
       run.z[k] = h.mmul(state.x).get(0, 0) + f.mmul(u).get(0, 0);
       run.sd[k] = h.mmul(state.G).norm('frobenius');
-      const x = Matrix.add(M.A.mmul(state.x), M.B.mmul(u));
+      const x = finiteOrRefuse(Matrix.add(M.A.mmul(state.x), M.B.mmul(u)), 'A');
       state = { x, G: lowerOf(beside(M.A.mmul(state.G), rootQ)) };
     }
+    finiteOrRefuse(state.G, 'A');
+    if (!allFinite(run.z) || !allFinite(run.sd)) return giveUp('out-of-range', { field: 'H' });
     return { ...run, logLikelihood, readings, x: state.x.to1DArray(), factor: state.G.to2DArray() };
   });
 }
@@ -80,6 +84,7 @@ function updateRoot({ x, G }: { x: Matrix; G: Matrix }, { y, C, R, offset }: Mea
   const rootS = post.subMatrix(0, m - 1, 0, m - 1);
   const white = solveFor(rootS, Matrix.sub(y, C.mmul(x)).sub(offset), 'R');
   const nis = white.dot(white);
+  if (!Number.isFinite(nis)) return giveUp('out-of-range', { field: 'y' });
   const logDet = 2 * rootS.diagonal().reduce((sum, d) => sum + Math.log(Math.abs(d)), 0);
   return {
     x: Matrix.add(x, post.subMatrix(m, m + n - 1, 0, m - 1).mmul(white)),

@@ -1,6 +1,7 @@
 import { medianOf } from './descriptive.ts';
 import { normalCdf, normalQuantile } from './distributions.ts';
 import { finiteAnswer, optionRefusal, vectorRefusal } from './input-checks.ts';
+import { valueAtRank } from './order-statistics.ts';
 import { refuse } from './result.ts';
 import type { Result } from './result.ts';
 
@@ -94,14 +95,14 @@ export function theilSen(
   if (slopes.length === 0) return refuse('no-spread', { field: 'at' });
   const variance = kendallVariance(recent.length, [tieSizes(times), tieSizes(recent)]);
   const reach = normalQuantile((1 + confidence) / 2) * Math.sqrt(Math.max(0, variance));
-  const slope = atRank(slopes, (slopes.length + 1) / 2);
+  const slope = valueAtRank(slopes, (slopes.length + 1) / 2);
   const centreAt = medianOf(times);
   const centreValue = medianOf(recent);
   return finiteAnswer({
     n: recent.length,
     slope,
-    low: atRank(slopes, (slopes.length - reach) / 2),
-    high: atRank(slopes, (slopes.length + reach) / 2 + 1),
+    low: valueAtRank(slopes, (slopes.length - reach) / 2),
+    high: valueAtRank(slopes, (slopes.length + reach) / 2 + 1),
     centreAt,
     centreValue,
     intercept: centreValue - slope * centreAt,
@@ -122,16 +123,7 @@ function pairSlopes(times: Float64Array, values: Float64Array): Float64Array {
       if (apart !== 0) slopes[count++] = (values[j]! - values[i]!) / apart;
     }
   }
-  return slopes.subarray(0, count).sort();
-}
-
-/** Value at a real 1-based rank of ascending values, interpolated, kept inside the ends. */
-function atRank(sorted: Float64Array, rank: number): number {
-  const position = Math.min(Math.max(rank, 1), sorted.length) - 1;
-  const below = Math.floor(position);
-  const low = sorted[below]!;
-  const high = sorted[Math.min(below + 1, sorted.length - 1)]!;
-  return position === below ? low : low + (position - below) * (high - low);
+  return slopes.subarray(0, count);
 }
 
 /** Sizes (≥ 2) of the groups of equal values. */

@@ -87,7 +87,7 @@ export function nisBySize(
   nis: ArrayLike<number>,
   dimension: number,
 ): Result<{ n: number; ratio: number; verdict: 'consistent' | 'overconfident' | 'underconfident' }> {
-  const refusal = countRefusal('dimension', dimension, 1, 1e6) ?? vectorRefusal('nis', nis, 1);
+  const refusal = countRefusal('dimension', dimension, 1, 1000) ?? vectorRefusal('nis', nis, 1);
   if (refusal) return refusal;
   const ratio = meanOf(nis) / dimension;
   const verdict = ratio > 2 ? 'overconfident' : ratio < 0.5 ? 'underconfident' : 'consistent';
@@ -105,8 +105,8 @@ export function nisBounds(
   confidence = 0.95,
 ): Result<{ low: number; high: number }> {
   const refusal =
-    countRefusal('dimension', dimension, 1, 1e6) ??
-    countRefusal('count', count, 1, 1e9) ??
+    countRefusal('dimension', dimension, 1, 1000) ??
+    countRefusal('count', count, 1, 1e6) ??
     optionRefusal('confidence', confidence, 0, 1, 'open');
   if (refusal) return refusal;
   const freedom = dimension * count;
@@ -118,6 +118,6 @@ export function nisBounds(
 
 /** Gate for a single normalised innovation squared: the χ² quantile `p` for its dimension. */
 export function nisGate(dimension: number, p: number): Result<{ gate: number }> {
-  const refusal = countRefusal('dimension', dimension, 1, 1e6) ?? optionRefusal('p', p, 0, 1, 'open');
+  const refusal = countRefusal('dimension', dimension, 1, 1000) ?? optionRefusal('p', p, 0, 1, 'open');
   return refusal ?? finiteAnswer({ gate: chiSquareQuantile(p, dimension) });
 }

@@ -1,10 +1,5 @@
-import {
-  historyDateOrder,
-  type DecimalSign,
-  type Delimiter,
-  type HistoryDateOrder,
-} from '../contracts/history.ts';
-import { timeReader } from './history-times.ts';
+import { historyDateOrder, type DecimalSign, type HistoryDateOrder } from '../contracts/history.ts';
+import { historyTimeReader } from './history-times.ts';
 import { isAbsent, readNumber } from './history-values.ts';
 
 const since2000 = Date.UTC(2000, 0, 1);
@@ -40,8 +35,11 @@ export function findTimes(rows: readonly string[][], zone: string, latestMs: num
 interface OrderEvidence {
   dateOrder: HistoryDateOrder;
   share: number;
+  /** How often the next time lies before the one above it. */
   backward: number;
+  /** From the earliest to the latest, in milliseconds. */
   span: number;
+  times: number[];
 }
 
 function timesIn(
@@ -55,11 +53,9 @@ function timesIn(
     .sort((a, b) => b.share - a.share || a.backward - b.backward || a.span - b.span);
   const [first, second] = orders;
   if (!first) return null;
-  const doubtful =
-    second !== undefined &&
-    second.share === first.share &&
-    second.backward === first.backward &&
-    second.span === first.span;
+  const asGood =
+    second?.share === first.share && second.backward === first.backward && second.span === first.span;
+  const doubtful = asGood && second.times.some((at, index) => at !== first.times[index]);
   return { dateOrder: first.dateOrder, share: first.share, doubtful };
 }
 
@@ -69,7 +65,7 @@ function evidenceFor(
   zone: string,
   latestMs: number,
 ): OrderEvidence {
-  const read = timeReader({ dateOrder, zone, latestMs });
+  const read = historyTimeReader({ dateOrder, zone, latestMs });
   // Any small number would pass as a moment early in 1970.
   const earliest = dateOrder.startsWith('epoch') ? since2000 : 0;
   const times = cells.map(read).filter((at): at is number => typeof at === 'number' && at >= earliest);
@@ -81,32 +77,8 @@ function evidenceFor(
     low = Math.min(low, at);
     high = Math.max(high, at);
   });
-  return {
-    dateOrder,
-    share: cells.length === 0 ? 0 : times.length / cells.length,
-    backward,
-    span: high - low,
-  };
-}
-
-const commaOnly = /^[+-]?\d*,(?:\d{1,2}|\d{4,})$|^[+-]?(?:0|\d{4,}),\d+$|\.\d{3},\d+$/;
-const pointOnly = /^[+-]?\d*\.(?:\d{1,2}|\d{4,})$|^[+-]?(?:0|\d{4,})\.\d+$|,\d{3}\.\d+$|\de[+-]?\d/i;
-const eitherComma = /^[+-]?[1-9]\d{0,2},\d{3}$/;
-
-/**
- * The decimal sign of a file, from cells that can only be read one way.
- * @returns `doubtful` where every comma might part thousands as well
- */
-export function findDecimal(
-  cells: readonly string[],
-  delimiter: Delimiter,
-): { decimal: DecimalSign; doubtful: boolean } {
-  const trimmed = cells.map((cell) => cell.trim());
-  const commas = trimmed.filter((cell) => commaOnly.test(cell)).length;
-  const points = trimmed.filter((cell) => pointOnly.test(cell)).length;
-  if (commas !== points) return { decimal: commas > points ? ',' : '.', doubtful: false };
-  const doubtful = trimmed.some((cell) => eitherComma.test(cell));
-  return { decimal: delimiter === ';' ? ',' : '.', doubtful };
+  const share = cells.length === 0 ? 0 : times.length / cells.length;
+  return { dateOrder, share, backward, span: high - low, times };
 }
 
 /** Share of the filled cells of a column that are numbers, 0 to 1; 1 where every cell is empty or says "no reading". */

@@ -1,6 +1,7 @@
 import type { Delimiter, HistoryDoubt, HistoryProposal, UnknownTag } from '../contracts/history.ts';
-import { findDecimal, findTimes, shareOfNumbers } from './history-evidence.ts';
+import { findTimes, shareOfNumbers } from './history-evidence.ts';
 import { readQuality } from './history-values.ts';
+import { detectDecimal } from './sample-number.ts';
 
 /** A tag of the site; `computed` where Cupel works its readings out itself. */
 export interface KnownTag {
@@ -47,7 +48,8 @@ export function proposeHistory(
   const timeColumn = times?.column ?? null;
   const others = head.header.map((_name, column) => column).filter((column) => column !== timeColumn);
   const cellsOf = (column: number) => head.rows.map((row) => row[column] ?? '');
-  const { decimal, doubtful } = findDecimal(others.flatMap(cellsOf), head.delimiter);
+  const shown = detectDecimal(others.flatMap(cellsOf));
+  const decimal = shown ?? (head.delimiter === ';' ? ',' : '.');
   const base = {
     delimiter: head.delimiter,
     decimal,
@@ -58,7 +60,7 @@ export function proposeHistory(
   };
   const doubts: HistoryDoubt[] = [
     ...(times?.doubtful ? (['date-order'] as const) : []),
-    ...(doubtful ? (['decimal'] as const) : []),
+    ...(shown === null ? (['decimal'] as const) : []),
   ];
   const byName = new Map(tags.map((tag) => [tag.name.toLowerCase(), tag]));
   const numeric = new Set(others.filter((column) => shareOfNumbers(cellsOf(column), decimal) >= 0.5));

@@ -6,7 +6,7 @@ import type {
   SampleRow,
 } from '../contracts/sample-import.ts';
 import { cellAt, isFlag, type ReadRow, type SampleDraft } from './sample-row.ts';
-import type { SampleRegistry } from './sample-registry.ts';
+import { type SampleRegistry, unitKey } from './sample-registry.ts';
 
 /** A result that stands in the registry under the number of a row. Instants are UTC milliseconds. */
 export interface StoredSample {
@@ -61,7 +61,7 @@ type Stated = Pick<SampleDraft, 'takenAt' | 'takenOn' | 'value' | 'qualifier' | 
 
 function difference(a: Stated, b: Stated): 'value' | 'unit' | 'time' | null {
   if (a.value !== b.value || a.qualifier !== b.qualifier) return 'value';
-  if (a.unit !== b.unit) return 'unit';
+  if (a.unit !== b.unit && unitKey(a.unit) !== unitKey(b.unit)) return 'unit';
   return a.takenAt === b.takenAt && a.takenOn === b.takenOn ? null : 'time';
 }
 

@@ -1,10 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import {
-  hautusRank,
-  observability,
-  observabilityGramian,
-  observabilityMatrix,
-} from '../../shared/numerics/observability.ts';
+import { observabilityGramian } from '../../shared/numerics/observability-gramian.ts';
+import { hautusRank, observability, observabilityMatrix } from '../../shared/numerics/observability.ts';
 import { conditionNumber, readMatrix } from '../../shared/numerics/linear-algebra.ts';
 import { answered, expectAllRelative, expectRelative } from './expectations.ts';
 import item from './values/observability-rank.json';

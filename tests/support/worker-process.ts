@@ -8,6 +8,13 @@ import { startWorkers } from '../../server/jobs/worker.ts';
 const log = pino({ level: 'silent' });
 const config = readConfig({ DATABASE_URL: process.env.DATABASE_URL, NODE_ENV: 'test' });
 const pool = createPool(config.databaseUrl, log, 4);
-const context = { config, pool, db: createDb(pool), log, clock: () => new Date(), compute: createComputePool(config) };
+const context = {
+  config,
+  pool,
+  db: createDb(pool),
+  log,
+  clock: () => new Date(),
+  compute: createComputePool(config),
+};
 await startWorkers(context);
 process.stdout.write('ready\n');

@@ -4,6 +4,11 @@ import { addJob } from '../../jobs/queue.ts';
 import { markDirty } from '../estimates/work.ts';
 import { widenSpans } from '../tags/spans.ts';
 
+/** One writer of history at a time and site until the transaction ends, so that what was compared or counted stays so. */
+export async function lockHistory(tx: Queryable, siteId: number): Promise<void> {
+  await tx.execute(sql`select pg_advisory_xact_lock(hashtext('cupel-history'), ${siteId}::int)`);
+}
+
 /**
  * Marks hours since 1970 of tags, to be rolled up by a job. A row that stands already is written anew: the roll-up may
  * be about to take it, and must then wait or see what was stored here.
@@ -73,7 +78,11 @@ export interface ChangedTag {
 }
 
 /** What follows from a stored batch whose hours are marked: spans, the roll-up, and the estimates that rest on it. */
-export async function batchStored(tx: Queryable, siteId: number, changed: readonly ChangedTag[]): Promise<void> {
+export async function batchStored(
+  tx: Queryable,
+  siteId: number,
+  changed: readonly ChangedTag[],
+): Promise<void> {
   if (changed.length === 0) return;
   await widenSpans(tx, siteId, changed);
   await queueRollUp(tx, siteId);

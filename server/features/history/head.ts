@@ -1,6 +1,7 @@
 import type { Delimiter, HistoryPreview, TextEncoding } from '../../../shared/contracts/history.ts';
 import { findTimes, shareOfNumbers } from '../../../shared/rules/history-evidence.ts';
 import { type KnownTag, proposeHistory } from '../../../shared/rules/history-proposal.ts';
+import { detectDelimiter } from '../../../shared/rules/sample-table.ts';
 import { decodeHead, noCsv, recogniseText } from './decode.ts';
 import { RecordReader } from './records.ts';
 
@@ -21,7 +22,6 @@ interface Row {
   cells: string[];
 }
 
-const delimiters: readonly Delimiter[] = ['\t', ';', '|', ','];
 const shownRows = 20;
 const judgedRows = 400;
 
@@ -37,8 +37,9 @@ export async function readHistoryHead(
 ): Promise<Omit<HistoryPreview, 'sameAs'>> {
   const encoding = recogniseText(bytes);
   const text = headText(bytes, encoding, whole);
-  const delimiter = wishes.delimiter ?? (await chooseDelimiter(text));
-  const rows = await rowsOf(text, delimiter);
+  const delimiter = wishes.delimiter ?? detectDelimiter(text);
+  if (!delimiter) throw noColumns();
+  const rows = await rowsOf(text, delimiter, whole);
   const headerRow = wishes.headerLine ? rowAt(rows, wishes.headerLine) : findHeader(rows, context);
   const data = rows.filter(({ line }) => line > headerRow.line);
   if (data.length === 0) throw noCsv('There are no lines below the header, so there is nothing to add.');
@@ -62,30 +63,15 @@ function headText(bytes: Buffer, encoding: TextEncoding, whole: boolean): string
   return whole ? text : text.slice(0, text.lastIndexOf('\n') + 1);
 }
 
-async function rowsOf(text: string, delimiter: Delimiter): Promise<Row[]> {
+/** `whole` false: the text is cut off somewhere, perhaps inside quotation marks; that is no fault of the file. */
+async function rowsOf(text: string, delimiter: Delimiter, whole: boolean): Promise<Row[]> {
   const rows: Row[] = [];
   const reader = new RecordReader(delimiter, (cells, line) => rows.push({ line, cells }));
   await reader.push(text);
-  await reader.end();
+  await reader.end().catch((error: unknown) => {
+    if (whole) throw error;
+  });
   return rows;
-}
-
-/** The separator that parts most of the first lines into the same number of cells; a comma may also be a decimal sign. */
-async function chooseDelimiter(text: string): Promise<Delimiter> {
-  const some = text.split('\n', 60).join('\n');
-  let best: { delimiter: Delimiter; share: number } | null = null;
-  for (const delimiter of delimiters) {
-    const rows = await rowsOf(some, delimiter).catch(() => []);
-    const width = usualWidth(rows);
-    const share = rows.filter(({ cells }) => cells.length === width).length / Math.max(1, rows.length);
-    if (width < 2) continue;
-    if (share >= 0.6) return delimiter;
-    if (share > (best?.share ?? 0)) best = { delimiter, share };
-  }
-  if (best) return best.delimiter;
-  throw noCsv(
-    'No columns were found: the lines hold no commas, semicolons, tabs or bars between a time and its values. Export the readings as CSV.',
-  );
 }
 
 function usualWidth(rows: readonly Row[]): number {
@@ -122,6 +108,11 @@ function findHeader(rows: readonly Row[], context: HeadContext): Row {
   if (!found) throw noHeader();
   return found;
 }
+
+const noColumns = () =>
+  noCsv(
+    'No columns were found: the lines hold no commas, semicolons, tabs or bars between a time and its values. Export the readings as CSV.',
+  );
 
 const noHeader = () =>
   noCsv(

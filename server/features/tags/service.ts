@@ -10,7 +10,7 @@ import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
 import { toWire } from '../../http/wire.ts';
 import { lastSaveOf, recordAudit } from '../audit/service.ts';
-import { readingsChanged } from '../history/changed.ts';
+import { lockHistory, readingsChanged } from '../history/changed.ts';
 import { getUnit, type SiteRow } from '../sites/repo.ts';
 import { archivedAt } from '../sites/service.ts';
 import {
@@ -124,6 +124,7 @@ export async function removeTagReadings(
     throw new AppError('invalid-input', message, { fields: [{ path: 'to', message }] });
   }
   return context.db.transaction(async (tx) => {
+    await lockHistory(tx, tag.siteId);
     const gone = await removeReadings(tx, { siteId: tag.siteId, tagId: tag.id }, from, to);
     if (gone) {
       // Only the hours that lost something: the period as typed may span centuries.

@@ -41,7 +41,12 @@ export function filterGeneral(work: FilterWork, from: number, to: number, predic
     for (let i = 0; i < n; i++) e += H[i]! * x[i]!;
     for (let j = 0; j < p; j++) e += F[j]! * u[k * p + j]!;
     z[k] = e;
-    if (sd.length > 0) sd[k] = Math.sqrt(Math.max(varianceOf(H, P), 0));
+    sums[3]! += e - e;
+    if (sd.length > 0) {
+      const variance = varianceOf(H, P);
+      sd[k] = Math.sqrt(Math.max(variance, 0));
+      sums[3]! += variance - variance;
+    }
   }
   sums[1]! += Math.log(product);
 }
@@ -179,6 +184,7 @@ export function steadyGeneral(work: FilterWork, steady: SteadyWork, from: number
     if (steady.scored && nis.length > 0) nis[k] = m > 0 ? nisHere : NaN;
     sums[2]! += nisHere;
     z[k] = e;
+    sums[3]! += e - e;
     x.set(f);
   }
   return k;

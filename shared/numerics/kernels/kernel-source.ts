@@ -46,7 +46,7 @@ function filterKernel(n: number): string {
       .map(([i, j]) => `let ${P(i, j)} = P[${i * n + j}]!;`)
       .join(' '),
     'const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;',
-    'let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;',
+    'let readings = 0, logDet = 0, quad = 0, product = 1, check = 0, skip = predicted;',
     'for (let k = from; k < to; k++) {',
     'if (skip) { skip = false; } else {',
     ...timeUpdate(n),
@@ -62,17 +62,17 @@ function filterKernel(n: number): string {
     'if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }',
     `let e = ${sum(range(n).map((i) => `h${i} * x${i}`))};`,
     'for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;',
-    'z[k] = e;',
+    'z[k] = e; check += e - e;',
     'if (wantSd) {',
     each(n, (i) => `const e${i} = ${sum(range(n).map((l) => `${P(i, l)} * h${l}`))};`),
     `const variance = ${sum(range(n).map((i) => `h${i} * e${i}`))};`,
-    'sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }',
+    'sd[k] = variance > 0 ? Math.sqrt(variance) : 0; check += variance - variance; }',
     '}',
     each(n, (i) => `x[${i}] = x${i};`),
     lower(n)
       .map(([i, j]) => `P[${i * n + j}] = ${P(i, j)};${i === j ? '' : ` P[${j * n + i}] = ${P(i, j)};`}`)
       .join(' '),
-    'sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;',
+    'sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; sums[3]! += check;',
     '}',
     '',
   ].join('\n');
@@ -140,7 +140,7 @@ function steadyKernel(n: number, m: number): string {
     each(m, (j) => `const g${j} = G[${j}]!, o${j} = present[${j}]!;`),
     each(n, (i) => `let x${i} = x[${i}]!;`),
     'const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;',
-    'let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;',
+    'let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;',
     'for (; k < to; k++, at += stride) {',
     each(m, (j) => `const y${j} = y[at + o${j}]!;`),
     `if (${range(m)
@@ -159,11 +159,11 @@ function steadyKernel(n: number, m: number): string {
     ),
     `for (let j = 0, b = 0; j < p; j++, b += ${n}) { const w = u[ku++]!; e += F[j]! * w; ` +
       `${each(n, (i) => `f${i} += B[b${i === 0 ? '' : ` + ${i}`}]! * w;`)} }`,
-    'z[k] = e;',
+    'z[k] = e; check += e - e;',
     each(n, (i) => `x${i} = f${i};`),
     '}',
     each(n, (i) => `x[${i}] = x${i};`),
-    'sums[2]! += quad;',
+    'sums[2]! += quad; sums[3]! += check;',
     'return k;',
     '}',
     '',

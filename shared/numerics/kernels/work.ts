@@ -29,7 +29,7 @@ export type FilterWork = {
   sd: Float64Array;
   nis: Float64Array;
   white: Float64Array;
-  /** [readings taken in, Σ ln det S, Σ NIS]. */
+  /** [readings taken in, Σ ln det S, Σ NIS, 0 or NaN once a result left the range of numbers]. */
   readonly sums: Float64Array;
 };
 

@@ -58,10 +58,7 @@ describe('noise variances from history', () => {
     const series = history(4, 3000, 0.04, 0.25);
     series.y.fill(NaN, 500, 620);
     const fit = answered(fitNoise(model, nothing, parameters, start, series));
-    const [process, sensor] = fit.parameters as [
-      { low: number; high: number },
-      { low: number; high: number },
-    ];
+    const [process, sensor] = [fit.parameters[0]!, fit.parameters[1]!];
     expect(process.low).toBeLessThan(0.04);
     expect(process.high).toBeGreaterThan(0.04);
     expect(sensor.low).toBeLessThan(0.25);

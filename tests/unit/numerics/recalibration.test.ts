@@ -35,7 +35,7 @@ describe('choosing a recalibration', () => {
   it('a wrong slope is answered by slope and intercept', () => {
     const judged = answered(
       judgeRecalibration(
-        samplesOf(2, 60, (x) => 0.6 * x + 5),
+        samplesOf(2, 60, (x) => 0.6 * x + 5, 0.3),
         options,
       ),
     );

@@ -11,7 +11,7 @@ const h0 = H[0]!;
 let x0 = x[0]!;
 let p0_0 = P[0]!;
 const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;
-let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;
+let readings = 0, logDet = 0, quad = 0, product = 1, check = 0, skip = predicted;
 for (let k = from; k < to; k++) {
 if (skip) { skip = false; } else {
 let f0 = a0_0 * x0;
@@ -42,15 +42,15 @@ readings += taken; quad += nisHere;
 if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }
 let e = h0 * x0;
 for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;
-z[k] = e;
+z[k] = e; check += e - e;
 if (wantSd) {
 const e0 = p0_0 * h0;
 const variance = h0 * e0;
-sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }
+sd[k] = variance > 0 ? Math.sqrt(variance) : 0; check += variance - variance; }
 }
 x[0] = x0;
 P[0] = p0_0;
-sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;
+sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; sums[3]! += check;
 }
 
 /** Fixed-gain filter for 1 state and 1 reading; see SteadyKernel in work.ts. */
@@ -66,7 +66,7 @@ const h0 = H[0]!;
 const g0 = G[0]!, o0 = present[0]!;
 let x0 = x[0]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!;
 if (y0 !== y0) break;
@@ -76,10 +76,10 @@ if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) n
 let e = (h0 * x0) + (g0 * v0);
 let f0 = (m0_0 * x0) + (k0_0 * y0);
 for (let j = 0, b = 0; j < p; j++, b += 1) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0;
 }
 x[0] = x0;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }

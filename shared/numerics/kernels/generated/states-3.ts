@@ -11,7 +11,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!;
 let p0_0 = P[0]!; let p1_0 = P[3]!; let p1_1 = P[4]!; let p2_0 = P[6]!; let p2_1 = P[7]!; let p2_2 = P[8]!;
 const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;
-let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;
+let readings = 0, logDet = 0, quad = 0, product = 1, check = 0, skip = predicted;
 for (let k = from; k < to; k++) {
 if (skip) { skip = false; } else {
 let f0 = a0_0 * x0 + a0_1 * x1 + a0_2 * x2; let f1 = a1_0 * x0 + a1_1 * x1 + a1_2 * x2; let f2 = a2_0 * x0 + a2_1 * x1 + a2_2 * x2;
@@ -42,15 +42,15 @@ readings += taken; quad += nisHere;
 if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }
 let e = h0 * x0 + h1 * x1 + h2 * x2;
 for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;
-z[k] = e;
+z[k] = e; check += e - e;
 if (wantSd) {
 const e0 = p0_0 * h0 + p1_0 * h1 + p2_0 * h2; const e1 = p1_0 * h0 + p1_1 * h1 + p2_1 * h2; const e2 = p2_0 * h0 + p2_1 * h1 + p2_2 * h2;
 const variance = h0 * e0 + h1 * e1 + h2 * e2;
-sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }
+sd[k] = variance > 0 ? Math.sqrt(variance) : 0; check += variance - variance; }
 }
 x[0] = x0; x[1] = x1; x[2] = x2;
 P[0] = p0_0; P[3] = p1_0; P[1] = p1_0; P[4] = p1_1; P[6] = p2_0; P[2] = p2_0; P[7] = p2_1; P[5] = p2_1; P[8] = p2_2;
-sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;
+sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; sums[3]! += check;
 }
 
 /** Fixed-gain filter for 3 states and 1 reading; see SteadyKernel in work.ts. */
@@ -66,7 +66,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!;
 const g0 = G[0]!, o0 = present[0]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!;
 if (y0 !== y0) break;
@@ -76,11 +76,11 @@ if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) n
 let e = (h0 * x0 + h1 * x1 + h2 * x2) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2) + (k0_2 * y0);
 for (let j = 0, b = 0; j < p; j++, b += 3) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2;
 }
 x[0] = x0; x[1] = x1; x[2] = x2;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }
 
@@ -97,7 +97,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!;
 if (y0 !== y0 || y1 !== y1) break;
@@ -107,11 +107,11 @@ if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = 
 let e = (h0 * x0 + h1 * x1 + h2 * x2) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2) + (k0_2 * y0 + k1_2 * y1);
 for (let j = 0, b = 0; j < p; j++, b += 3) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2;
 }
 x[0] = x0; x[1] = x1; x[2] = x2;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }
 
@@ -128,7 +128,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!; const g2 = G[2]!, o2 = present[2]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!; const y2 = y[at + o2]!;
 if (y0 !== y0 || y1 !== y1 || y2 !== y2) break;
@@ -138,10 +138,10 @@ if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 =
 let e = (h0 * x0 + h1 * x1 + h2 * x2) + (g0 * v0 + g1 * v1 + g2 * v2);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2);
 for (let j = 0, b = 0; j < p; j++, b += 3) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2;
 }
 x[0] = x0; x[1] = x1; x[2] = x2;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }

@@ -11,7 +11,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
 let p0_0 = P[0]!; let p1_0 = P[6]!; let p1_1 = P[7]!; let p2_0 = P[12]!; let p2_1 = P[13]!; let p2_2 = P[14]!; let p3_0 = P[18]!; let p3_1 = P[19]!; let p3_2 = P[20]!; let p3_3 = P[21]!; let p4_0 = P[24]!; let p4_1 = P[25]!; let p4_2 = P[26]!; let p4_3 = P[27]!; let p4_4 = P[28]!; let p5_0 = P[30]!; let p5_1 = P[31]!; let p5_2 = P[32]!; let p5_3 = P[33]!; let p5_4 = P[34]!; let p5_5 = P[35]!;
 const wantNis = nis.length > 0, wantSd = sd.length > 0, wantWhite = white.length > 0;
-let readings = 0, logDet = 0, quad = 0, product = 1, skip = predicted;
+let readings = 0, logDet = 0, quad = 0, product = 1, check = 0, skip = predicted;
 for (let k = from; k < to; k++) {
 if (skip) { skip = false; } else {
 let f0 = a0_0 * x0 + a0_1 * x1 + a0_2 * x2 + a0_3 * x3 + a0_4 * x4 + a0_5 * x5; let f1 = a1_0 * x0 + a1_1 * x1 + a1_2 * x2 + a1_3 * x3 + a1_4 * x4 + a1_5 * x5; let f2 = a2_0 * x0 + a2_1 * x1 + a2_2 * x2 + a2_3 * x3 + a2_4 * x4 + a2_5 * x5; let f3 = a3_0 * x0 + a3_1 * x1 + a3_2 * x2 + a3_3 * x3 + a3_4 * x4 + a3_5 * x5; let f4 = a4_0 * x0 + a4_1 * x1 + a4_2 * x2 + a4_3 * x3 + a4_4 * x4 + a4_5 * x5; let f5 = a5_0 * x0 + a5_1 * x1 + a5_2 * x2 + a5_3 * x3 + a5_4 * x4 + a5_5 * x5;
@@ -42,15 +42,15 @@ readings += taken; quad += nisHere;
 if (product > 1e100 || product < 1e-100) { logDet += Math.log(product); product = 1; }
 let e = h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5;
 for (let j = 0, b = k * p; j < p; j++) e += F[j]! * u[b++]!;
-z[k] = e;
+z[k] = e; check += e - e;
 if (wantSd) {
 const e0 = p0_0 * h0 + p1_0 * h1 + p2_0 * h2 + p3_0 * h3 + p4_0 * h4 + p5_0 * h5; const e1 = p1_0 * h0 + p1_1 * h1 + p2_1 * h2 + p3_1 * h3 + p4_1 * h4 + p5_1 * h5; const e2 = p2_0 * h0 + p2_1 * h1 + p2_2 * h2 + p3_2 * h3 + p4_2 * h4 + p5_2 * h5; const e3 = p3_0 * h0 + p3_1 * h1 + p3_2 * h2 + p3_3 * h3 + p4_3 * h4 + p5_3 * h5; const e4 = p4_0 * h0 + p4_1 * h1 + p4_2 * h2 + p4_3 * h3 + p4_4 * h4 + p5_4 * h5; const e5 = p5_0 * h0 + p5_1 * h1 + p5_2 * h2 + p5_3 * h3 + p5_4 * h4 + p5_5 * h5;
 const variance = h0 * e0 + h1 * e1 + h2 * e2 + h3 * e3 + h4 * e4 + h5 * e5;
-sd[k] = variance > 0 ? Math.sqrt(variance) : 0; }
+sd[k] = variance > 0 ? Math.sqrt(variance) : 0; check += variance - variance; }
 }
 x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
 P[0] = p0_0; P[6] = p1_0; P[1] = p1_0; P[7] = p1_1; P[12] = p2_0; P[2] = p2_0; P[13] = p2_1; P[8] = p2_1; P[14] = p2_2; P[18] = p3_0; P[3] = p3_0; P[19] = p3_1; P[9] = p3_1; P[20] = p3_2; P[15] = p3_2; P[21] = p3_3; P[24] = p4_0; P[4] = p4_0; P[25] = p4_1; P[10] = p4_1; P[26] = p4_2; P[16] = p4_2; P[27] = p4_3; P[22] = p4_3; P[28] = p4_4; P[30] = p5_0; P[5] = p5_0; P[31] = p5_1; P[11] = p5_1; P[32] = p5_2; P[17] = p5_2; P[33] = p5_3; P[23] = p5_3; P[34] = p5_4; P[29] = p5_4; P[35] = p5_5;
-sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad;
+sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; sums[3]! += check;
 }
 
 /** Fixed-gain filter for 6 states and 1 reading; see SteadyKernel in work.ts. */
@@ -66,7 +66,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4
 const g0 = G[0]!, o0 = present[0]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!;
 if (y0 !== y0) break;
@@ -76,11 +76,11 @@ if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) n
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5) + (k0_2 * y0); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5) + (k0_3 * y0); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5) + (k0_4 * y0); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5) + (k0_5 * y0);
 for (let j = 0, b = 0; j < p; j++, b += 6) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
 }
 x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }
 
@@ -97,7 +97,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!;
 if (y0 !== y0 || y1 !== y1) break;
@@ -107,11 +107,11 @@ if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = 
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5) + (k0_2 * y0 + k1_2 * y1); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5) + (k0_3 * y0 + k1_3 * y1); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5) + (k0_4 * y0 + k1_4 * y1); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5) + (k0_5 * y0 + k1_5 * y1);
 for (let j = 0, b = 0; j < p; j++, b += 6) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
 }
 x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }
 
@@ -128,7 +128,7 @@ const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!; const g2 = G[2]!, o2 = present[2]!;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
-let quad = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
+let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
 for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!; const y2 = y[at + o2]!;
 if (y0 !== y0 || y1 !== y1 || y2 !== y2) break;
@@ -138,10 +138,10 @@ if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 =
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5) + (g0 * v0 + g1 * v1 + g2 * v2);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5) + (k0_3 * y0 + k1_3 * y1 + k2_3 * y2); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5) + (k0_4 * y0 + k1_4 * y1 + k2_4 * y2); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5) + (k0_5 * y0 + k1_5 * y1 + k2_5 * y2);
 for (let j = 0, b = 0; j < p; j++, b += 6) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; }
-z[k] = e;
+z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5;
 }
 x[0] = x0; x[1] = x1; x[2] = x2; x[3] = x3; x[4] = x4; x[5] = x5;
-sums[2]! += quad;
+sums[2]! += quad; sums[3]! += check;
 return k;
 }

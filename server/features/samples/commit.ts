@@ -1,0 +1,108 @@
+import { sql } from 'drizzle-orm';
+import type { SampleImportView } from '../../../shared/contracts/sample-import.ts';
+import { AppError } from '../../../shared/contracts/errors.ts';
+import { countOutcomes } from '../../../shared/rules/sample-outcomes.ts';
+import { isFlag } from '../../../shared/rules/sample-row.ts';
+import { sayCounts } from '../../../shared/rules/sample-sentences.ts';
+import type { Context } from '../../context.ts';
+import type { Tx } from '../../db/client.ts';
+import { type Permitted, lockRow } from '../../http/rows.ts';
+import { samplesChanged } from '../judging/changed.ts';
+import { type By, note, refuseMoved, viewImport } from './imports.ts';
+import { type ImportRow, setImport } from './imports-repo.ts';
+import { type DryRun, readText, refuseForeign, runDry } from './reading.ts';
+import { addSamples, withdrawSamples } from './repo.ts';
+
+/**
+ * Adds the samples of a file, all or none. What becomes of each row is decided again here, one commit of a site after
+ * the other: the dry run may be hours old, and another file may have brought the same samples meanwhile.
+ */
+export async function commitImport(
+  context: Context,
+  by: By,
+  row: Permitted<ImportRow>,
+  body: { version: number; outcome?: string | undefined },
+): Promise<SampleImportView> {
+  return context.db.transaction(async (tx) => {
+    const locked = await lockRow(tx, 'sampleImport', row);
+    const now = context.clock();
+    await refuseMoved(tx, locked, body.version, now);
+    if (!locked.mapping) throw new AppError('conflict', 'Say what each column holds first.');
+    await refuseForeign(tx, row.siteId, locked.mapping);
+    await tx.execute(sql`select pg_advisory_xact_lock(hashtext('sample-imports'), ${row.siteId})`);
+    const { text } = await readText(tx, locked);
+    const dry = await runDry(tx, locked, text, locked.mapping, now);
+    await refuseOther(tx, locked, dry, body.outcome, now);
+    await add(tx, by, locked, dry, now);
+    const counts = countOutcomes(dry.rows);
+    const after = await setImport(tx, row, {
+      state: 'committed',
+      committedAt: now,
+      counts,
+      version: locked.version + 1,
+    });
+    await note(context, tx, by, 'commit', after, { mapping: locked.mapping, counts });
+    return viewImport(tx, after, now);
+  });
+}
+
+/** Only what was seen is added: an outcome that changed since is shown instead. */
+async function refuseOther(
+  tx: Tx,
+  row: ImportRow,
+  dry: DryRun,
+  seen: string | undefined,
+  now: Date,
+): Promise<void> {
+  const counts = countOutcomes(dry.rows);
+  const same =
+    seen === undefined ? JSON.stringify(row.counts) === JSON.stringify(counts) : seen === dry.outcome;
+  if (!same) {
+    const message = `What becomes of these rows has changed since it was shown. Now ${sayCounts(counts, 'will')} Look at them again.`;
+    throw new AppError('stale', message, { current: { ...(await viewImport(tx, row, now)) } });
+  }
+  if (counts.added === 0) {
+    throw new AppError('conflict', `There is nothing to add. ${sayCounts(counts, 'will')}`);
+  }
+}
+
+async function add(tx: Tx, by: By, row: ImportRow, dry: DryRun, now: Date): Promise<void> {
+  const { siteId, id: importId } = row;
+  const rows = dry.rows.flatMap(({ outcome, sample, reasons, row: { line } }) => {
+    if (!sample || (outcome !== 'added' && outcome !== 'added-with-flag')) return [];
+    return [{ sample, line, flags: reasons.map(({ code }) => code).filter(isFlag) }];
+  });
+  const { methodId } = row.mapping!;
+  await addSamples(tx, { siteId, methodId, importId, enteredBy: by.actor.id, enteredAt: now, rows });
+  const samplePointIds = [...new Set(rows.map(({ sample }) => sample.samplePointId))];
+  await samplesChanged(tx, { siteId, samplePointIds });
+}
+
+/** Takes the samples of a file out again. They stay in the database, withdrawn; the estimates are judged without them. */
+export async function undoImport(
+  context: Context,
+  by: By,
+  row: Permitted<ImportRow>,
+): Promise<SampleImportView> {
+  return context.db.transaction(async (tx) => {
+    const locked = await lockRow(tx, 'sampleImport', row);
+    if (locked.state !== 'committed') {
+      const message =
+        locked.state === 'undone'
+          ? 'The samples of this file were taken out already.'
+          : 'The samples of this file have not been added, so there is nothing to undo.';
+      throw new AppError('conflict', message);
+    }
+    const now = context.clock();
+    const samplePointIds = await withdrawSamples(tx, row.siteId, row.id, now);
+    await samplesChanged(tx, { siteId: row.siteId, samplePointIds });
+    const after = await setImport(tx, row, {
+      state: 'undone',
+      undoneAt: now,
+      undoneBy: by.actor.id,
+      version: locked.version + 1,
+    });
+    await note(context, tx, by, 'undo', after, { counts: after.counts });
+    return viewImport(tx, after, now);
+  });
+}
