@@ -15,7 +15,8 @@ export function createQueryClient(onSignedOut: () => void): QueryClient {
     defaultOptions: {
       queries: {
         staleTime: 15_000,
-        retry: (failures, error) => (error instanceof ApiProblem && error.status > 0 && error.status < 500 ? false : failures < 2),
+        retry: (failures, error) =>
+          error instanceof ApiProblem && error.status > 0 && error.status < 500 ? false : failures < 2,
       },
     },
   });

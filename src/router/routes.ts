@@ -17,7 +17,12 @@ export const routes: RouteRecordRaw[] = [
     path: '/',
     component: () => import('../layouts/MainLayout.vue'),
     children: [
-      { path: '', name: 'board', component: () => import('../pages/board/BoardPage.vue'), meta: { title: 'Board' } },
+      {
+        path: '',
+        name: 'board',
+        component: () => import('../pages/board/BoardPage.vue'),
+        meta: { title: 'Board' },
+      },
       {
         path: 'register',
         name: 'register',

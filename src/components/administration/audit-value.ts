@@ -1,5 +1,7 @@
 import { roles as allRoles, type Role } from '../../../shared/contracts/access.ts';
-import { formatInstant, NO_VALUE } from '../../../shared/rules/format.ts';
+import { formatInstant, formatNumber, NO_VALUE } from '../../../shared/rules/format.ts';
+import { sayDuration } from '../register/durations.ts';
+import { fieldLabel } from './audit-words.ts';
 import { rolesInWords } from './role-words.ts';
 
 const instant = /^\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d(\.\d+)?Z$/;
@@ -9,17 +11,34 @@ interface Around {
   sites: readonly { id: number; name: string; archivedAt: string | null }[];
 }
 
-/** A value of an audit entry in words; what has parts comes as indented lines. */
-export function valueWords(value: unknown, around: Around): string {
+/** A value of an audit entry in words; what has parts takes a line for each. */
+export function valueWords(field: string, value: unknown, around: Around): string {
   if (value === null || value === undefined || value === '') return NO_VALUE;
   if (typeof value === 'boolean') return value ? 'yes' : 'no';
-  if (typeof value === 'number') return String(value).replace('-', '−');
+  if (typeof value === 'number') return field.endsWith('Ms') ? sayDuration(value) : numberWords(value);
   if (typeof value === 'string') return instant.test(value) ? formatInstant(value, around.zone) : value;
   if (isRoles(value)) return rolesInWords({ administrator: false, roles: value }, around.sites);
-  if (Array.isArray(value) && value.every((item) => typeof item !== 'object'))
-    return value.join(', ') || NO_VALUE;
-  return JSON.stringify(value, null, 2);
+  if (Array.isArray(value)) return listWords(field, value, around);
+  return partsWords(value, around, '\n');
 }
+
+function numberWords(value: number): string {
+  if (Number.isInteger(value)) return formatNumber(value);
+  return String(Number(value.toPrecision(6))).replace('-', '−');
+}
+
+function listWords(field: string, items: unknown[], around: Around): string {
+  if (items.length === 0) return NO_VALUE;
+  const parts = items.every((item) => typeof item === 'object' && item !== null);
+  return parts
+    ? items.map((item) => partsWords(item as object, around, ', ')).join('\n')
+    : items.map((item) => valueWords(field, item, around)).join(', ');
+}
+
+const partsWords = (parts: object, around: Around, between: string): string =>
+  Object.entries(parts)
+    .map(([name, part]) => `${fieldLabel(name).toLowerCase()} ${valueWords(name, part, around)}`)
+    .join(between);
 
 function isRoles(value: unknown): value is { siteId: number; role: Role }[] {
   return (

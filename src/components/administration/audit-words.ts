@@ -64,6 +64,7 @@ export interface FieldChange {
 const labels: Record<string, string> = {
   email: 'E-mail address',
   areaId: 'Area number',
+  tagId: 'Tag number',
   unitId: 'Unit number',
   tagName: 'Tag',
   archivedAt: 'Archived',
@@ -80,7 +81,7 @@ export function fieldChanges({ before, after }: Pick<AuditEntry, 'before' | 'aft
     .filter((field) => !hidden.has(field))
     .map((field) => ({
       field,
-      label: labels[field] ?? labelOf(field),
+      label: fieldLabel(field),
       before: before?.[field],
       after: after?.[field],
       changed: JSON.stringify(before?.[field]) !== JSON.stringify(after?.[field]),
@@ -88,8 +89,12 @@ export function fieldChanges({ before, after }: Pick<AuditEntry, 'before' | 'aft
   return [...rows.filter(({ changed }) => changed), ...rows.filter(({ changed }) => !changed)];
 }
 
-/** "rangeLow" → "Range low". */
-function labelOf(field: string): string {
-  const words = field.replace(/([a-z])([A-Z])/g, '$1 $2').toLowerCase();
+/** "rangeLow" → "Range low"; the unit of a duration stands in its value. */
+export function fieldLabel(field: string): string {
+  if (labels[field]) return labels[field];
+  const words = field
+    .replace(/Ms$/, '')
+    .replace(/([a-z])([A-Z])/g, '$1 $2')
+    .toLowerCase();
   return words[0]!.toUpperCase() + words.slice(1);
 }

@@ -1,10 +1,10 @@
 import type { Tag } from '../../../shared/contracts/tags.ts';
 import { formatNumber, NO_VALUE } from '../../../shared/rules/format.ts';
 
-/** A figure whose decimals nobody stated: six significant digits at most, without trailing zeros. */
+/** A figure whose decimals nobody stated: four significant digits, whole numbers in full, without trailing zeros. */
 export function figureWords(value: number | null): string {
   if (value === null) return NO_VALUE;
-  const rounded = Number(value.toPrecision(6));
+  const rounded = Math.abs(value) >= 1000 ? Math.round(value) : Number(value.toPrecision(4));
   const [, fraction = ''] = rounded.toFixed(12).replace(/0+$/, '').split('.');
   return formatNumber(rounded, fraction.length);
 }

@@ -1,4 +1,5 @@
-import { formatClock, formatZoneInWords } from '../../../shared/rules/format.ts';
+import { formatClock } from '../../../shared/rules/format.ts';
+import { offsetWords } from './own-time.ts';
 
 /** Every zone this browser knows, as choices; UTC first. */
 export function zoneChoices(): { value: string; label: string }[] {
@@ -8,6 +9,5 @@ export function zoneChoices(): { value: string; label: string }[] {
 
 /** "Europe/Copenhagen, now 14:05 (UTC+1)". */
 export function zoneNow(zone: string, now: Date): string {
-  const [, offset = 'UTC'] = /\((.*)\)$/.exec(formatZoneInWords(now, zone, '')) ?? [];
-  return `${zone.replaceAll('_', ' ')}, now ${formatClock(now, zone)} (${offset})`;
+  return `${zone.replaceAll('_', ' ')}, now ${formatClock(now, zone)} ${offsetWords(now, zone)}`;
 }

@@ -1,3 +1,4 @@
+import type { z } from 'zod';
 import { sheetBody, type Consumer, type SheetFields } from '../../../shared/contracts/register.ts';
 import { readDuration, splitDuration, type DurationText } from './durations.ts';
 import { numberText, readNumber } from './number-text.ts';
@@ -136,9 +137,40 @@ export function readForm(form: SheetForm): { fields: SheetFields } | { errors: S
   }
   const parsed = sheetBody.safeParse(values);
   if (parsed.success && Object.keys(errors).length === 0) return { fields: parsed.data };
-  for (const issue of parsed.error?.issues ?? []) {
+  const found = parsed.error?.issues ?? [];
+  for (const issue of [...found, ...issuesBetweenFields(values, found)]) {
     errors[issue.path.join('.')] ??= issue.message;
     errors[String(issue.path[0])] ??= issue.message;
   }
   return { errors };
+}
+
+/** What any sheet could hold where a field can't be read yet. */
+const standIn: Partial<SheetFields> = {
+  unitId: 1,
+  tagName: '-',
+  name: '-',
+  quantity: '-',
+  unit: '',
+  decimals: 0,
+  consumers: [],
+  purpose: '',
+  fallback: '',
+  limitations: '',
+  transportDelayMs: 0,
+  pairingWindowMs: 0,
+  promisedReferenceMs: 1,
+  historyEveryMs: 1,
+  updateFactor: 1,
+  recalibrationMonths: 1,
+  reviewMonths: 1,
+};
+
+/** Rules between fields are only asked of fields that can be read, so those at fault are stood in for. */
+function issuesBetweenFields(values: Record<string, unknown>, found: readonly z.core.$ZodIssue[]) {
+  if (found.length === 0) return [];
+  const standIns = Object.fromEntries(
+    found.map(({ path }) => [path[0], standIn[path[0] as keyof SheetFields] ?? null]),
+  );
+  return sheetBody.safeParse({ ...values, ...standIns }).error?.issues ?? [];
 }
