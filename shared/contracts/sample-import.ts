@@ -131,7 +131,7 @@ export const sampleImportView = z.object({
   }),
   /** Refused first, then held, flagged, skipped, added; the first 200 of each. */
   rows: z.array(sampleRow),
-  /** Changes when the outcome of any row does. A commit may say which was seen, else the counts must be the same. */
+  /** Changes when the outcome of any row does; a commit says which was seen. Null while the mapping is open. */
   outcome: z.string().nullable(),
   sameAs: z.object({ importId: idNumber, at: isoInstant }).nullable(),
 });

@@ -216,7 +216,7 @@ export const samples = {
     summary: 'Add the samples of the dry run that was seen, all in one transaction',
     access: { may: 'samples.add', on: 'sampleImport' },
     params: ids('sampleImportId'),
-    body: z.object({ version, outcome: z.string().optional() }),
+    body: z.object({ version, outcome: z.string().min(1) }),
     reply: sampleImportView,
     example: exampleView,
   }),

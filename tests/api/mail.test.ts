@@ -54,6 +54,21 @@ describe('a mail', () => {
     expect(read.body.text).toContain(tokenIn(letter!));
   });
 
+  it('is shown beside the message that went to the same person, not another', async () => {
+    const first = await addPerson('Agnes Thornbury');
+    const second = await addPerson('Farid Qureshi');
+    await server.drainJobs();
+    for (const [email, name] of [
+      [first, 'Agnes Thornbury'],
+      [second, 'Farid Qureshi'],
+    ] as const) {
+      const { localMailId } = await listed(email);
+      const read = await administrator.get(`/api/v1/local-mails/${localMailId}`).expect(200);
+      expect(read.body.to).toBe(email);
+      expect(read.body.text).toContain(`Hello ${name},`);
+    }
+  });
+
   it('that the server can’t be reached for is kept with what went wrong, and goes out later', async () => {
     const email = await addPerson();
     const { id } = await listed(email);

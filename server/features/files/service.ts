@@ -43,7 +43,8 @@ export async function storeFile(
       held = [];
       heldBytes = 0;
     };
-    for await (const piece of stream as AsyncIterable<Buffer>) {
+    // Left open on refusal: the rest of the upload is read away, so that the answer still reaches the browser.
+    for await (const piece of stream.iterator({ destroyOnReturn: false }) as AsyncIterable<Buffer>) {
       size += piece.length;
       if (size > about.maxBytes) throw tooLarge(about.maxBytes);
       hash.update(piece);

@@ -14,9 +14,10 @@ export async function listMails(db: Queryable, page: { page: number; perPage: nu
       lastError: mails.lastError,
       createdAt: mails.createdAt,
       sentAt: mails.sentAt,
+      // Named in full: unqualified, the column would be the inner table's own. A message sent twice counts once.
       localMailId: sql<
         number | null
-      >`(select id from local_mails l where l.message_id = ${mails.messageId} order by id desc limit 1)`,
+      >`(select max(l.id) from local_mails l where l.message_id = mails.message_id)`,
     })
     .from(mails)
     .orderBy(desc(mails.createdAt), desc(mails.id))

@@ -21,7 +21,7 @@ export async function commitImport(
   context: Context,
   by: By,
   row: Permitted<ImportRow>,
-  body: { version: number; outcome?: string | undefined },
+  body: { version: number; outcome: string },
 ): Promise<SampleImportView> {
   return context.db.transaction(async (tx) => {
     const locked = await lockRow(tx, 'sampleImport', row);
@@ -47,17 +47,9 @@ export async function commitImport(
 }
 
 /** Only what was seen is added: an outcome that changed since is shown instead. */
-async function refuseOther(
-  tx: Tx,
-  row: ImportRow,
-  dry: DryRun,
-  seen: string | undefined,
-  now: Date,
-): Promise<void> {
+async function refuseOther(tx: Tx, row: ImportRow, dry: DryRun, seen: string, now: Date): Promise<void> {
   const counts = countOutcomes(dry.rows);
-  const same =
-    seen === undefined ? JSON.stringify(row.counts) === JSON.stringify(counts) : seen === dry.outcome;
-  if (!same) {
+  if (seen !== dry.outcome) {
     const message = `What becomes of these rows has changed since it was shown. Now ${sayCounts(counts, 'will')} Look at them again.`;
     throw new AppError('stale', message, { current: { ...(await viewImport(tx, row, now)) } });
   }
