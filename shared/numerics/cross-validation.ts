@@ -1,7 +1,7 @@
 import { countRefusal, finiteAnswer } from './input-checks.ts';
 import { fitPls, plsPredictions } from './pls.ts';
 import type { PlsData } from './pls.ts';
-import { regressionRefusal } from './design-matrix.ts';
+import { columnsRefusal } from './design-matrix.ts';
 import type { RegressionData } from './design-matrix.ts';
 import { fitLeastSquares, predictAt } from './regression.ts';
 import { fitRidge } from './ridge.ts';
@@ -84,7 +84,7 @@ function overFolds(
   options: { folds: number; scheme: FoldScheme },
   predict: (training: PlsData, test: number[][]) => number[][] | Refusal,
 ): Result<CrossValidation> {
-  const refusal = regressionRefusal({ ...data, intercept: true }, 0);
+  const refusal = columnsRefusal(data);
   if (refusal) return refusal;
   const made = chronologicalFolds(data.y.length, options.folds, options.scheme);
   if (!made.ok) return made;

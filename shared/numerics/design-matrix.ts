@@ -28,9 +28,9 @@ export type ScaledDesign = {
 /** Below this share of its own size, a column's spread is rounding error: the column counts as constant. */
 const spreadFloor = 1e-13;
 
-/** Checks shapes and numbers; `spareRows` rows more than there are parameters are needed. Null when sound. */
-export function regressionRefusal(data: RegressionData, spareRows = 1): Refusal | null {
-  const { columns, names, y, intercept } = data;
+/** Checks columns, names and y: shapes that belong together, finite numbers, at least one row. Null when sound. */
+export function columnsRefusal(data: Omit<RegressionData, 'intercept'>): Refusal | null {
+  const { columns, names, y } = data;
   if (!Array.isArray(columns) || columns.length === 0) return wrongShape('columns');
   if (!Array.isArray(names) || names.length !== columns.length) {
     return wrongShape('names', columns.length, names?.length);
@@ -41,8 +41,15 @@ export function regressionRefusal(data: RegressionData, spareRows = 1): Refusal 
     const columnRefusal = vectorRefusal(String(names[j]), column, 1, y.length);
     if (columnRefusal) return columnRefusal;
   }
-  const needed = columns.length + (intercept ? 1 : 0) + spareRows;
-  return y.length < needed ? notEnough('y', needed, y.length) : null;
+  return null;
+}
+
+/** As {@link columnsRefusal}, and one row more than there are parameters. */
+export function regressionRefusal(data: RegressionData): Refusal | null {
+  const refusal = columnsRefusal(data);
+  if (refusal) return refusal;
+  const needed = data.columns.length + (data.intercept ? 2 : 1);
+  return data.y.length < needed ? notEnough('y', needed, data.y.length) : null;
 }
 
 /**

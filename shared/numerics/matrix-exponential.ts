@@ -14,7 +14,7 @@ const pade13 = [
 const theta13 = 4.25;
 
 /** c₁₃: (2m)!/(m!)² · (2m + 1)! at m = 13, the reciprocal of the first backward-error coefficient. */
-const leadingError13 = 113250775606021113483283660800000000;
+const leadingError13 = 1.1325077560602111e35;
 
 /**
  * Matrix exponential e^A of an n×n matrix by scaling and squaring with the [13/13] Padé approximant (Al-Mohy & Higham,

@@ -1,7 +1,8 @@
+import { columnsRefusal } from './design-matrix.ts';
 import type { RegressionData } from './design-matrix.ts';
 import { meanOf, sdOf } from './descriptive.ts';
-import { countRefusal, finiteAnswer, vectorRefusal } from './input-checks.ts';
-import { notEnough, refuse, wrongShape } from './result.ts';
+import { countRefusal, finiteAnswer } from './input-checks.ts';
+import { notEnough, refuse } from './result.ts';
 import type { Refusal, Result } from './result.ts';
 
 /** Data of a PLS fit: columns of length n, their names, and y. */
@@ -98,19 +99,11 @@ export function plsPredictions(model: PlsModel, x: ArrayLike<number>): Float64Ar
 }
 
 function plsRefusal(data: PlsData, options: PlsOptions): Refusal | null {
-  const { columns, names, y } = data;
-  if (!Array.isArray(columns) || columns.length === 0) return wrongShape('columns');
-  if (!Array.isArray(names) || names.length !== columns.length) {
-    return wrongShape('names', columns.length, names?.length);
-  }
   const refusal =
-    vectorRefusal('y', y, 3) ?? countRefusal('components', options.components, 1, columns.length);
+    columnsRefusal(data) ?? countRefusal('components', options.components, 1, data.columns.length);
   if (refusal) return refusal;
-  for (const [j, column] of columns.entries()) {
-    const columnRefusal = vectorRefusal(String(names[j]), column, 1, y.length);
-    if (columnRefusal) return columnRefusal;
-  }
-  return y.length < options.components + 2 ? notEnough('y', options.components + 2, y.length) : null;
+  const needed = options.components + 2;
+  return data.y.length < needed ? notEnough('y', needed, data.y.length) : null;
 }
 
 /** NIPALS: deflates `x` and `rest` in place, component by component. */

@@ -40,9 +40,8 @@ export type FitRefusal = Refusal & { collinearGroups?: string[][] };
 export const conditionLimit = 1e12;
 
 /**
- * Ordinary least squares by Householder QR on columns centred and scaled to unit length, refined once on the
- * residuals. Collinear columns that can still be solved are named in `collinearGroups`; beyond a condition number of
- * 1e12 the fit is refused: `collinear` with `collinearGroups`, or `ill-conditioned` (`figure`: condition number).
+ * Ordinary least squares by Householder QR on columns centred and scaled to unit length. Collinear columns that can
+ * still be solved are named in `collinearGroups`; beyond a condition number of 1e12 the fit is refused: `collinear` with `collinearGroups`, or `ill-conditioned` (`figure`: condition number).
  * Also refuses `not-enough-data` (needs one row more than parameters), `no-spread` (a constant column or y, named in
  * `field`), `wrong-shape`, `non-finite-input`, `out-of-range`.
  * Source: Golub & Van Loan, Matrix Computations, ch. 5; accuracy against NIST StRD in tests/reference.
@@ -56,7 +55,7 @@ export function fitLeastSquares(data: RegressionData): ({ ok: true } & LeastSqua
   const diagnosis = collinearityOf(qr.upperTriangularMatrix, data.names);
   const illConditioned = conditionRefusal(diagnosis);
   if (illConditioned) return illConditioned;
-  const scaled = solveRefined(qr, design);
+  const scaled = Float64Array.from(qr.solve(Matrix.columnVector(design.y)).getColumn(0));
   const coefficients = scaled.map((value, j) => value / design.lengths[j]!);
   const covariance = unscaledCovariance(diagnosis, design.lengths);
   return finiteAnswer({
@@ -83,12 +82,6 @@ function conditionRefusal(diagnosis: Collinearity): FitRefusal | null {
   if (conditionNumber <= conditionLimit) return null;
   const reason = groups.length > 0 ? 'collinear' : 'ill-conditioned';
   return { ...refuse(reason, { field: 'columns', figure: conditionNumber }), collinearGroups: groups };
-}
-
-function solveRefined(qr: QrDecomposition, design: ScaledDesign): Float64Array {
-  const first = qr.solve(Matrix.columnVector(design.y));
-  const rest = Matrix.columnVector(design.y).sub(design.z.mmul(first));
-  return Float64Array.from(first.add(qr.solve(rest)).getColumn(0));
 }
 
 /** C = D⁻¹ V S⁻² Vᵀ D⁻¹ with D the column lengths, by rows. */

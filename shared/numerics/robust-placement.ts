@@ -19,7 +19,7 @@ type Slot = { pole: Complex; basis: { re: Matrix; im: Matrix }; re: Matrix; im: 
 /** A robust gain with the measures of its eigenvector matrix X of unit columns: |det X| and cond₂ X. */
 export type RobustGain = { K: Matrix; determinant: number; condition: number };
 
-const startsTried = 4;
+const startsTried = 3;
 const mostSweeps = 400;
 
 /**
@@ -139,7 +139,7 @@ function volumeOf(slots: Slot[]): number {
   return singularValues(columnsOf(slots), 'poles').s.reduce((product, s) => product * s, 1);
 }
 
-/** Sweeps over all pairs until |det X| stands still (relative 1e-12). */
+/** Sweeps over all pairs until |det X| stands still (relative 1e-10). */
 function improve(start: Slot[]): { slots: Slot[]; volume: number } {
   const slots = [...start];
   const real = slots.flatMap((slot, i) => (slot.pole.im === 0 ? [i] : []));
@@ -155,7 +155,7 @@ function improve(start: Slot[]): { slots: Slot[]; volume: number } {
       }
     }
     const now = volumeOf(slots);
-    if (now <= volume * (1 + 1e-12)) return { slots, volume: Math.max(now, volume) };
+    if (now <= volume * (1 + 1e-10)) return { slots, volume: Math.max(now, volume) };
     volume = now;
   }
   return { slots, volume };

@@ -52,12 +52,16 @@ export function siegmundRunLength(
   const refusal = cusumRefusal(options);
   if (refusal) return refusal;
   const { k, h, shift = 0 } = options;
-  const b = h + 1.166;
-  const side = (drift: number) =>
-    Math.abs(drift) < 1e-9 ? b * b : (Math.exp(-2 * drift * b) + 2 * drift * b - 1) / (2 * drift * drift);
-  const upper = side(shift - k);
-  const lower = side(-shift - k);
+  const upper = siegmundSide(shift - k, h);
+  const lower = siegmundSide(-shift - k, h);
   return finiteAnswer({ upper, lower, runLength: 1 / (1 / upper + 1 / lower) });
+}
+
+function siegmundSide(drift: number, h: number): number {
+  const b = h + 1.166;
+  return Math.abs(drift) < 1e-9
+    ? b * b
+    : (Math.exp(-2 * drift * b) + 2 * drift * b - 1) / (2 * drift * drift);
 }
 
 /**
@@ -87,14 +91,26 @@ export function ewmaRunLength(options: EwmaRunLengthOptions): Result<RunLength> 
 export function cusumIntervalFor(runLength: number, k: number): Result<{ h: number }> {
   const refusal = wantedRefusal(runLength) ?? optionRefusal('k', k, 0, 3);
   if (refusal) return refusal;
-  return limitFor('h', runLength, 0.01, 30, (h) => cusumRunLength({ k, h }));
+  // Siegmund's form is near enough to bracket the exact h, which costs a linear system for each try.
+  let [low, high] = [0, 40_000];
+  for (let step = 0; step < 60; step++) {
+    const middle = (low + high) / 2;
+    if (siegmundSide(-k, middle) < 2 * runLength) low = middle;
+    else high = middle;
+  }
+  if (low > 90) return refuse('out-of-range', { field: 'runLength', figure: runLength });
+  return limitFor('h', runLength, Math.max(0.01, 0.9 * low - 0.3), 1.1 * low + 0.3, (h) =>
+    cusumRunLength({ k, h }),
+  );
 }
 
 /** EWMA limit width (SDs of z) for a wanted in-control run length, independent normal errors, fixed limits. */
 export function ewmaWidthFor(runLength: number, lambda: number): Result<{ width: number }> {
   const refusal = wantedRefusal(runLength) ?? optionRefusal('lambda', lambda, 0.01, 1);
   if (refusal) return refusal;
-  return limitFor('width', runLength, 0.1, 8, (width) => ewmaRunLength({ lambda, width }));
+  // An EWMA never needs wider limits than single values do.
+  const widest = -normalQuantile(1 / (2 * runLength)) + 0.1;
+  return limitFor('width', runLength, 0.1, widest, (width) => ewmaRunLength({ lambda, width }));
 }
 
 /** Limit width (SDs) of an individuals chart for a wanted in-control run length, independent normal errors. */

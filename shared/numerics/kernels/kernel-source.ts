@@ -138,6 +138,9 @@ function steadyKernel(n: number, m: number): string {
     entries('W', (m * (m + 1)) / 2, 1),
     each(n, (i) => `const h${i} = H[${i}]!;`),
     each(m, (j) => `const g${j} = G[${j}]!, o${j} = present[${j}]!;`),
+    // The first two inputs are unrolled as well; most models have no more.
+    'const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;',
+    each(n, (i) => `const b0_${i} = one ? B[${i}]! : 0, b1_${i} = two ? B[${n + i}]! : 0;`),
     each(n, (i) => `let x${i} = x[${i}]!;`),
     'const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;',
     'let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;',
@@ -157,8 +160,11 @@ function steadyKernel(n: number, m: number): string {
       (i) =>
         `let f${i} = (${sum(range(n).map((l) => `m${i}_${l} * x${l}`))}) + (${sum(range(m).map((j) => `k${j}_${i} * y${j}`))});`,
     ),
-    `for (let j = 0, b = 0; j < p; j++, b += ${n}) { const w = u[ku++]!; e += F[j]! * w; ` +
+    'const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;',
+    each(n, (i) => `f${i} += b0_${i} * u0 + b1_${i} * u1;`),
+    `for (let j = 2, b = ${2 * n}; j < p; j++, b += ${n}) { const w = u[ku + j]!; e += F[j]! * w; ` +
       `${each(n, (i) => `f${i} += B[b${i === 0 ? '' : ` + ${i}`}]! * w;`)} }`,
+    'ku += p;',
     'z[k] = e; check += e - e;',
     each(n, (i) => `x${i} = f${i};`),
     '}',

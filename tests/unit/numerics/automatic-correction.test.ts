@@ -116,6 +116,14 @@ describe('lag-1 verdict on a per-sample correction', () => {
     expect(answered(lag1Verdict(corrected(0, 0.5, 0.7), 0.5)).verdict).toBe('right');
     expect(answered(lag1Verdict(corrected(0, 0.1, 0.7), 0.1)).verdict).toBe('too-slow');
   });
+  it('sets r₁ ± 2/√n against 0 and −λ/2', () => {
+    const errors = corrected(0, 0.4, 0).subarray(0, 400);
+    expect(answered(lag1Verdict(errors, 0.4))).toMatchObject({ n: 400, band: 0.1, noise: -0.2 });
+    // r₁ of about −1 is below both.
+    const alternating = Float64Array.from({ length: 400 }, (_, i) => (i % 2 ? 1 : -1));
+    expect(answered(lag1Verdict(alternating, 0.1)).verdict).toBe('chasing-noise');
+  });
+
   it('cannot tell from few samples', () => {
     expect(answered(lag1Verdict(corrected(0, 0.3, 0).subarray(0, 20), 0.3)).verdict).toBe('cannot-tell');
   });

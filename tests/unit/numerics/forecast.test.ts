@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { forecastCrossing } from '../../../shared/numerics/forecast.ts';
 import { holdLast } from '../../../shared/numerics/hold-last.ts';
-import { seededRandom } from '../../trials/seeded-random.ts';
+import { autoregression, seededRandom } from '../../trials/seeded-random.ts';
 import { answered, expectAllRelative, expectRelative } from '../../reference/expectations.ts';
 
 const day = 86_400_000;
@@ -73,6 +73,31 @@ describe('forecast of the day on which the allowed error is reached', () => {
       forecastCrossing(daily(10), drifting(10, 0.1, 0.1, 7), { allowed: 5, nowMs: start + 9 * day }),
     );
     expect(forecast).toMatchObject({ beyond: true, crossesAt: null, notBefore: null, notAfter: null });
+  });
+
+  it('errors that hang together about the line leave less certainty than independent ones', () => {
+    const at = daily(40);
+    const wave = Array.from({ length: 40 }, (_, i) => 0.1 * i + Math.sin(i / 3));
+    const mixed = wave.map((_, i) => 0.1 * i + Math.sin(((i * 17) % 40) / 3));
+    const width = (errors: number[]) => {
+      const { slopeLow, slopeHigh } = answered(forecastCrossing(at, errors, { allowed: 9, nowMs: at[39]! }));
+      return slopeHigh - slopeLow;
+    };
+    expect(width(wave)).toBeGreaterThan(1.3 * width(mixed));
+  });
+
+  it('the interval of the slope covers the truth in about 95 % of drifts with autocorrelated errors', () => {
+    const random = seededRandom(12);
+    let covered = 0;
+    for (let run = 0; run < 1000; run++) {
+      const errors = autoregression(random, 30, 0.3).map((value, i) => value + 0.1 * i);
+      const { slopeLow, slopeHigh } = answered(
+        forecastCrossing(daily(30), errors, { allowed: 9, nowMs: start }),
+      );
+      if (slopeLow <= 0.1 && slopeHigh >= 0.1) covered++;
+    }
+    expect(covered).toBeGreaterThan(910);
+    expect(covered).toBeLessThan(985);
   });
 
   it('does not depend on the unit of the errors', () => {

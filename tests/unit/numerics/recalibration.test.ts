@@ -83,6 +83,15 @@ describe('choosing a recalibration', () => {
     expect(Math.abs(answered(laterPerformance(mended)).bias)).toBeLessThan(0.01);
   });
 
+  it('a slope is put on top of the slope in force', () => {
+    const current = { slope: 2, offset: -3 };
+    const samples = samplesOf(9, 60, (x) => (0.6 * x + 5 + 3) / 2, 0.1);
+    const { correction, slope } = answered(fitCandidate('linear', samples, current, 1));
+    expectRelative(correction.slope, 2 * slope!, 1e-12);
+    const mended = samples.raw.map((raw, i) => applyCorrection(correction, raw) - samples.reference[i]!);
+    expect(Math.abs(mended.reduce((a, b) => a + b, 0))).toBeLessThan(1e-8);
+  });
+
   it('a refit is taken only when it gains enough over the best simple candidate', () => {
     const samples = samplesOf(6, 50, (x) => x + 4);
     const perfect = samples.reference.map((value, i) => value + (i % 2 ? 0.1 : -0.1));

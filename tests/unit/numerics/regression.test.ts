@@ -108,6 +108,21 @@ describe('least squares', () => {
     expect(fit.vif[1]).toBeLessThan(2);
   });
 
+  it('keeps two nearly equal pairs apart although all four move together a little', () => {
+    const random = seededRandom(14);
+    const common = Float64Array.from({ length: 80 }, () => random.normal());
+    const one = common.map((value) => value + random.normal());
+    const two = common.map((value) => value + random.normal());
+    const near = (column: Float64Array) => column.map((value) => value + 0.05 * random.normal());
+    const y = one.map((value, i) => value - two[i]! + random.normal());
+    const columns = [one, two, near(one), near(two)];
+    const fit = answered(fitLeastSquares({ columns, names: ['a', 'b', 'c', 'd'], y, intercept: true }));
+    expect(fit.collinearGroups).toEqual([
+      ['a', 'c'],
+      ['b', 'd'],
+    ]);
+  });
+
   it('refuses a constant input by name, and says how many rows are missing', () => {
     const data = randomData(9, 10, 2);
     expect(

@@ -88,6 +88,7 @@ describe('validity region', () => {
     const share = (reason: 't2' | 'spe') =>
       judged.filter(({ reasons }) => reasons.includes(reason)).length / 4000;
     expect(share('t2')).toBeLessThan(0.03);
+    expect(share('t2')).toBeGreaterThan(0.002);
     expect(share('spe')).toBeLessThan(0.03);
     expect(share('spe')).toBeGreaterThan(0.002);
   });

@@ -108,7 +108,7 @@ describe('health', () => {
     const values = noisy(1095, (i) => 0.3 * Math.sin(i / 50), 21);
     let changes = 0;
     let last = '';
-    for (let i = 40; i < values.length; i += 3) {
+    for (let i = 40; i < values.length; i += 12) {
       const { health } = healthOf(input(errorsOf(values.slice(Math.max(0, i - 150), i), 6)));
       if (last && health !== last) changes++;
       last = health;

@@ -182,6 +182,12 @@ describe('the order that a column shows', () => {
     expect(detectDateOrder(['n/a', ''])).toBeNull();
   });
 
+  it('stands against a slip in one of ten', () => {
+    const days = Array.from({ length: 9 }, (_, index) => `${13 + index}.11.2026`);
+    expect(detectDateOrder([...days, '11.30.2026'])).toBe('day-month-year');
+    expect(detectDateOrder([...days.slice(1), '11.30.2026'])).toBeNull();
+  });
+
   it('knows year-first, named months and milliseconds', () => {
     expect(detectDateOrder(['2025-04-03T06:00:00Z'])).toBe('iso');
     expect(detectDateOrder(['3 Apr 2025'])).toBe('day-month-year');

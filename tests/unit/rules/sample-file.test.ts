@@ -164,6 +164,7 @@ describe('numbers under one decimal sign', () => {
     expect(detectDecimal(['1.234,5'])).toBe(',');
     expect(detectDecimal(['1.234.567'])).toBe(',');
     expect(detectDecimal(['1,5', '1.5'])).toBeNull();
+    expect(detectDecimal([...Array.from({ length: 9 }, () => '1,5'), '1.5'])).toBe(',');
     expect(detectDecimal(['7', '8', 'n/a', '<9'])).toBe('.');
     expect(detectDecimal(['<0,05', 'pend'])).toBe(',');
   });

@@ -64,6 +64,8 @@ const k0_0 = K[0]!;
 const w0_0 = W[0]!;
 const h0 = H[0]!;
 const g0 = G[0]!, o0 = present[0]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[1]! : 0;
 let x0 = x[0]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -75,7 +77,10 @@ const v0 = y0 - (c0_0 * x0);
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0) + (g0 * v0);
 let f0 = (m0_0 * x0) + (k0_0 * y0);
-for (let j = 0, b = 0; j < p; j++, b += 1) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1;
+for (let j = 2, b = 2; j < p; j++, b += 1) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0;
 }

@@ -64,6 +64,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!;
 const w0_0 = W[0]!;
 const h0 = H[0]!; const h1 = H[1]!;
 const g0 = G[0]!, o0 = present[0]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[2]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[3]! : 0;
 let x0 = x[0]!; let x1 = x[1]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -75,7 +77,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1);
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0 + h1 * x1) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1) + (k0_1 * y0);
-for (let j = 0, b = 0; j < p; j++, b += 2) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1;
+for (let j = 2, b = 4; j < p; j++, b += 2) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1;
 }
@@ -95,6 +100,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k1_0 = K[2]!; const k1_1 = K[3]!;
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
 const h0 = H[0]!; const h1 = H[1]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[2]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[3]! : 0;
 let x0 = x[0]!; let x1 = x[1]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -106,7 +113,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1); const v1 = y1 - (c1_0 * x0 + c1_1 * x1)
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
 let e = (h0 * x0 + h1 * x1) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1) + (k0_1 * y0 + k1_1 * y1);
-for (let j = 0, b = 0; j < p; j++, b += 2) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1;
+for (let j = 2, b = 4; j < p; j++, b += 2) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1;
 }

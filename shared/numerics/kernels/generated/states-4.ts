@@ -64,6 +64,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!;
 const w0_0 = W[0]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
 const g0 = G[0]!, o0 = present[0]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[4]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[5]! : 0; const b0_2 = one ? B[2]! : 0, b1_2 = two ? B[6]! : 0; const b0_3 = one ? B[3]! : 0, b1_3 = two ? B[7]! : 0;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -75,7 +77,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3);
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0);
-for (let j = 0, b = 0; j < p; j++, b += 4) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1; f2 += b0_2 * u0 + b1_2 * u1; f3 += b0_3 * u0 + b1_3 * u1;
+for (let j = 2, b = 8; j < p; j++, b += 4) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3;
 }
@@ -95,6 +100,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; 
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[4]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[5]! : 0; const b0_2 = one ? B[2]! : 0, b1_2 = two ? B[6]! : 0; const b0_3 = one ? B[3]! : 0, b1_3 = two ? B[7]! : 0;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -106,7 +113,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3); const v1 = y1 -
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0 + k1_2 * y1); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0 + k1_3 * y1);
-for (let j = 0, b = 0; j < p; j++, b += 4) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1; f2 += b0_2 * u0 + b1_2 * u1; f3 += b0_3 * u0 + b1_3 * u1;
+for (let j = 2, b = 8; j < p; j++, b += 4) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3;
 }
@@ -126,6 +136,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; 
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!; const w3_0 = W[3]!; const w4_0 = W[4]!; const w5_0 = W[5]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!; const g2 = G[2]!, o2 = present[2]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[4]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[5]! : 0; const b0_2 = one ? B[2]! : 0, b1_2 = two ? B[6]! : 0; const b0_3 = one ? B[3]! : 0, b1_3 = two ? B[7]! : 0;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -137,7 +149,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3); const v1 = y1 -
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 = w3_0 * v0 + w4_0 * v1 + w5_0 * v2; const q = s0 * s0 + s1 * s1 + s2 * s2; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; white[k * stride + o2] = s2; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0 + g1 * v1 + g2 * v2);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0 + k1_3 * y1 + k2_3 * y2);
-for (let j = 0, b = 0; j < p; j++, b += 4) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1; f2 += b0_2 * u0 + b1_2 * u1; f3 += b0_3 * u0 + b1_3 * u1;
+for (let j = 2, b = 8; j < p; j++, b += 4) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3;
 }

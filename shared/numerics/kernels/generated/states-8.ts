@@ -64,6 +64,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; 
 const w0_0 = W[0]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!; const h6 = H[6]!; const h7 = H[7]!;
 const g0 = G[0]!, o0 = present[0]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[8]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[9]! : 0; const b0_2 = one ? B[2]! : 0, b1_2 = two ? B[10]! : 0; const b0_3 = one ? B[3]! : 0, b1_3 = two ? B[11]! : 0; const b0_4 = one ? B[4]! : 0, b1_4 = two ? B[12]! : 0; const b0_5 = one ? B[5]! : 0, b1_5 = two ? B[13]! : 0; const b0_6 = one ? B[6]! : 0, b1_6 = two ? B[14]! : 0; const b0_7 = one ? B[7]! : 0, b1_7 = two ? B[15]! : 0;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!; let x6 = x[6]!; let x7 = x[7]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -75,7 +77,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3 + c0_4 * x4 + c0_
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5 + h6 * x6 + h7 * x7) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5 + m0_6 * x6 + m0_7 * x7) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5 + m1_6 * x6 + m1_7 * x7) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5 + m2_6 * x6 + m2_7 * x7) + (k0_2 * y0); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5 + m3_6 * x6 + m3_7 * x7) + (k0_3 * y0); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5 + m4_6 * x6 + m4_7 * x7) + (k0_4 * y0); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5 + m5_6 * x6 + m5_7 * x7) + (k0_5 * y0); let f6 = (m6_0 * x0 + m6_1 * x1 + m6_2 * x2 + m6_3 * x3 + m6_4 * x4 + m6_5 * x5 + m6_6 * x6 + m6_7 * x7) + (k0_6 * y0); let f7 = (m7_0 * x0 + m7_1 * x1 + m7_2 * x2 + m7_3 * x3 + m7_4 * x4 + m7_5 * x5 + m7_6 * x6 + m7_7 * x7) + (k0_7 * y0);
-for (let j = 0, b = 0; j < p; j++, b += 8) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; f6 += B[b + 6]! * w; f7 += B[b + 7]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1; f2 += b0_2 * u0 + b1_2 * u1; f3 += b0_3 * u0 + b1_3 * u1; f4 += b0_4 * u0 + b1_4 * u1; f5 += b0_5 * u0 + b1_5 * u1; f6 += b0_6 * u0 + b1_6 * u1; f7 += b0_7 * u0 + b1_7 * u1;
+for (let j = 2, b = 16; j < p; j++, b += 8) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; f6 += B[b + 6]! * w; f7 += B[b + 7]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5; x6 = f6; x7 = f7;
 }
@@ -95,6 +100,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; 
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!; const h6 = H[6]!; const h7 = H[7]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[8]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[9]! : 0; const b0_2 = one ? B[2]! : 0, b1_2 = two ? B[10]! : 0; const b0_3 = one ? B[3]! : 0, b1_3 = two ? B[11]! : 0; const b0_4 = one ? B[4]! : 0, b1_4 = two ? B[12]! : 0; const b0_5 = one ? B[5]! : 0, b1_5 = two ? B[13]! : 0; const b0_6 = one ? B[6]! : 0, b1_6 = two ? B[14]! : 0; const b0_7 = one ? B[7]! : 0, b1_7 = two ? B[15]! : 0;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!; let x6 = x[6]!; let x7 = x[7]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -106,7 +113,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3 + c0_4 * x4 + c0_
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5 + h6 * x6 + h7 * x7) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5 + m0_6 * x6 + m0_7 * x7) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5 + m1_6 * x6 + m1_7 * x7) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5 + m2_6 * x6 + m2_7 * x7) + (k0_2 * y0 + k1_2 * y1); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5 + m3_6 * x6 + m3_7 * x7) + (k0_3 * y0 + k1_3 * y1); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5 + m4_6 * x6 + m4_7 * x7) + (k0_4 * y0 + k1_4 * y1); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5 + m5_6 * x6 + m5_7 * x7) + (k0_5 * y0 + k1_5 * y1); let f6 = (m6_0 * x0 + m6_1 * x1 + m6_2 * x2 + m6_3 * x3 + m6_4 * x4 + m6_5 * x5 + m6_6 * x6 + m6_7 * x7) + (k0_6 * y0 + k1_6 * y1); let f7 = (m7_0 * x0 + m7_1 * x1 + m7_2 * x2 + m7_3 * x3 + m7_4 * x4 + m7_5 * x5 + m7_6 * x6 + m7_7 * x7) + (k0_7 * y0 + k1_7 * y1);
-for (let j = 0, b = 0; j < p; j++, b += 8) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; f6 += B[b + 6]! * w; f7 += B[b + 7]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1; f2 += b0_2 * u0 + b1_2 * u1; f3 += b0_3 * u0 + b1_3 * u1; f4 += b0_4 * u0 + b1_4 * u1; f5 += b0_5 * u0 + b1_5 * u1; f6 += b0_6 * u0 + b1_6 * u1; f7 += b0_7 * u0 + b1_7 * u1;
+for (let j = 2, b = 16; j < p; j++, b += 8) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; f6 += B[b + 6]! * w; f7 += B[b + 7]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5; x6 = f6; x7 = f7;
 }
@@ -126,6 +136,8 @@ const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; 
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!; const w3_0 = W[3]!; const w4_0 = W[4]!; const w5_0 = W[5]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!; const h4 = H[4]!; const h5 = H[5]!; const h6 = H[6]!; const h7 = H[7]!;
 const g0 = G[0]!, o0 = present[0]!; const g1 = G[1]!, o1 = present[1]!; const g2 = G[2]!, o2 = present[2]!;
+const one = p > 0, two = p > 1, r0 = one ? F[0]! : 0, r1 = two ? F[1]! : 0;
+const b0_0 = one ? B[0]! : 0, b1_0 = two ? B[8]! : 0; const b0_1 = one ? B[1]! : 0, b1_1 = two ? B[9]! : 0; const b0_2 = one ? B[2]! : 0, b1_2 = two ? B[10]! : 0; const b0_3 = one ? B[3]! : 0, b1_3 = two ? B[11]! : 0; const b0_4 = one ? B[4]! : 0, b1_4 = two ? B[12]! : 0; const b0_5 = one ? B[5]! : 0, b1_5 = two ? B[13]! : 0; const b0_6 = one ? B[6]! : 0, b1_6 = two ? B[14]! : 0; const b0_7 = one ? B[7]! : 0, b1_7 = two ? B[15]! : 0;
 let x0 = x[0]!; let x1 = x[1]!; let x2 = x[2]!; let x3 = x[3]!; let x4 = x[4]!; let x5 = x[5]!; let x6 = x[6]!; let x7 = x[7]!;
 const missing = absent.length, wantNis = nis.length > 0, wantWhite = white.length > 0, scored = steady.scored;
 let quad = 0, check = 0, k = from, at = (from - work.yStart) * stride, ku = from * p;
@@ -137,7 +149,10 @@ const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3 + c0_4 * x4 + c0_
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 = w3_0 * v0 + w4_0 * v1 + w5_0 * v2; const q = s0 * s0 + s1 * s1 + s2 * s2; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; white[k * stride + o2] = s2; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3 + h4 * x4 + h5 * x5 + h6 * x6 + h7 * x7) + (g0 * v0 + g1 * v1 + g2 * v2);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3 + m0_4 * x4 + m0_5 * x5 + m0_6 * x6 + m0_7 * x7) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3 + m1_4 * x4 + m1_5 * x5 + m1_6 * x6 + m1_7 * x7) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3 + m2_4 * x4 + m2_5 * x5 + m2_6 * x6 + m2_7 * x7) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3 + m3_4 * x4 + m3_5 * x5 + m3_6 * x6 + m3_7 * x7) + (k0_3 * y0 + k1_3 * y1 + k2_3 * y2); let f4 = (m4_0 * x0 + m4_1 * x1 + m4_2 * x2 + m4_3 * x3 + m4_4 * x4 + m4_5 * x5 + m4_6 * x6 + m4_7 * x7) + (k0_4 * y0 + k1_4 * y1 + k2_4 * y2); let f5 = (m5_0 * x0 + m5_1 * x1 + m5_2 * x2 + m5_3 * x3 + m5_4 * x4 + m5_5 * x5 + m5_6 * x6 + m5_7 * x7) + (k0_5 * y0 + k1_5 * y1 + k2_5 * y2); let f6 = (m6_0 * x0 + m6_1 * x1 + m6_2 * x2 + m6_3 * x3 + m6_4 * x4 + m6_5 * x5 + m6_6 * x6 + m6_7 * x7) + (k0_6 * y0 + k1_6 * y1 + k2_6 * y2); let f7 = (m7_0 * x0 + m7_1 * x1 + m7_2 * x2 + m7_3 * x3 + m7_4 * x4 + m7_5 * x5 + m7_6 * x6 + m7_7 * x7) + (k0_7 * y0 + k1_7 * y1 + k2_7 * y2);
-for (let j = 0, b = 0; j < p; j++, b += 8) { const w = u[ku++]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; f6 += B[b + 6]! * w; f7 += B[b + 7]! * w; }
+const u0 = one ? u[ku]! : 0, u1 = two ? u[ku + 1]! : 0; e += r0 * u0 + r1 * u1;
+f0 += b0_0 * u0 + b1_0 * u1; f1 += b0_1 * u0 + b1_1 * u1; f2 += b0_2 * u0 + b1_2 * u1; f3 += b0_3 * u0 + b1_3 * u1; f4 += b0_4 * u0 + b1_4 * u1; f5 += b0_5 * u0 + b1_5 * u1; f6 += b0_6 * u0 + b1_6 * u1; f7 += b0_7 * u0 + b1_7 * u1;
+for (let j = 2, b = 16; j < p; j++, b += 8) { const w = u[ku + j]!; e += F[j]! * w; f0 += B[b]! * w; f1 += B[b + 1]! * w; f2 += B[b + 2]! * w; f3 += B[b + 3]! * w; f4 += B[b + 4]! * w; f5 += B[b + 5]! * w; f6 += B[b + 6]! * w; f7 += B[b + 7]! * w; }
+ku += p;
 z[k] = e; check += e - e;
 x0 = f0; x1 = f1; x2 = f2; x3 = f3; x4 = f4; x5 = f5; x6 = f6; x7 = f7;
 }
