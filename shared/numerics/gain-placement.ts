@@ -70,7 +70,7 @@ export function placeGain(
       poles: eigenvaluesOf(Matrix.sub(A, K.mmul(C)), 'A'),
       unmoved: seen.unmoved,
       miss,
-      determinant: inner.determinant,
+      determinant: inner.volume,
       condition: inner.condition !== null && Number.isFinite(inner.condition) ? inner.condition : null,
     };
   });
@@ -125,7 +125,7 @@ function placeObservable(A: Matrix, C: Matrix, poles: Complex[]) {
   const combine = U.subMatrix(0, C.rows - 1, 0, rank - 1).transpose();
   const C1 = combine.mmul(C);
   if (rank === 1) {
-    return { K: placeSingleOutput(A, C1, poles).mmul(combine), determinant: null, condition: null };
+    return { K: placeSingleOutput(A, C1, poles).mmul(combine), volume: null, condition: null };
   }
   const most = Math.max(...poles.map((a) => poles.filter((b) => a.re === b.re && a.im === b.im).length));
   if (most > rank) return giveUp('out-of-range', { field: 'poles', figure: most });

@@ -1,6 +1,7 @@
 import { historyDateOrder, type DecimalSign, type HistoryDateOrder } from '../contracts/history.ts';
 import { historyTimeReader } from './history-times.ts';
 import { isAbsent, readNumber } from './history-values.ts';
+import { detectDecimal } from './sample-number.ts';
 
 const since2000 = Date.UTC(2000, 0, 1);
 
@@ -79,6 +80,28 @@ function evidenceFor(
   });
   const share = cells.length === 0 ? 0 : times.length / cells.length;
   return { dateOrder, share, backward, span: high - low, times };
+}
+
+/** One cell in so many that is written the other way is a slip; more make the sign doubtful. */
+const slips = 20;
+
+/**
+ * The decimal sign of a file, from cells that can only be read one way; {@link detectDecimal} says which those are.
+ * @returns null where it is in doubt: every sign may part thousands as well, or cells of both kinds are many
+ */
+export function findDecimal(cells: readonly string[]): DecimalSign | null {
+  const counts = { '.': 0, ',': 0 };
+  let open = false;
+  for (const cell of cells) {
+    if (!cell.includes('.') && !cell.includes(',')) continue;
+    if (Number.isNaN(readNumber(cell, '.')) && Number.isNaN(readNumber(cell, ','))) continue;
+    const sign = detectDecimal([cell]);
+    if (sign === null) open = true;
+    else counts[sign]++;
+  }
+  const [more, less] = counts['.'] >= counts[','] ? (['.', ','] as const) : ([',', '.'] as const);
+  if (counts[more] === 0) return open ? null : '.';
+  return counts[more] > slips * counts[less] ? more : null;
 }
 
 /** Share of the filled cells of a column that are numbers, 0 to 1; 1 where every cell is empty or says "no reading". */

@@ -1,7 +1,6 @@
 import type { Delimiter, HistoryDoubt, HistoryProposal, UnknownTag } from '../contracts/history.ts';
-import { findTimes, shareOfNumbers } from './history-evidence.ts';
+import { findDecimal, findTimes, shareOfNumbers } from './history-evidence.ts';
 import { readQuality } from './history-values.ts';
-import { detectDecimal } from './sample-number.ts';
 
 /** A tag of the site; `computed` where Cupel works its readings out itself. */
 export interface KnownTag {
@@ -14,8 +13,10 @@ export interface HistoryHead {
   delimiter: Delimiter;
   headerLine: number;
   header: readonly string[];
-  /** Data rows below the header. */
+  /** Data rows below the header, as many as are needed to judge times and numbers. */
   rows: readonly string[][];
+  /** Every data row that has been read: a name may stand in any of them. */
+  every: readonly string[][];
 }
 
 export interface Proposal {
@@ -48,7 +49,7 @@ export function proposeHistory(
   const timeColumn = times?.column ?? null;
   const others = head.header.map((_name, column) => column).filter((column) => column !== timeColumn);
   const cellsOf = (column: number) => head.rows.map((row) => row[column] ?? '');
-  const shown = detectDecimal(others.flatMap(cellsOf));
+  const shown = findDecimal(others.flatMap(cellsOf));
   const decimal = shown ?? (head.delimiter === ';' ? ',' : '.');
   const base = {
     delimiter: head.delimiter,
@@ -69,6 +70,7 @@ export function proposeHistory(
     name: head.header[column]!.trim(),
     cells: cellsOf(column),
     numeric: numeric.has(column),
+    every: () => head.every.map((row) => (row[column] ?? '').trim()),
   }));
   const tagColumn = findTagColumn(columns, byName);
   return tagColumn === null
@@ -81,6 +83,7 @@ interface ColumnView {
   name: string;
   cells: string[];
   numeric: boolean;
+  every: () => string[];
 }
 type ByName = ReadonlyMap<string, KnownTag>;
 type Base = Omit<HistoryProposal, 'shape' | 'columns' | 'tagColumn' | 'valueColumn' | 'qualityColumn'>;
@@ -90,7 +93,7 @@ type Shaped = Omit<Proposal, 'doubts'>;
 function findTagColumn(columns: readonly ColumnView[], byName: ByName): number | null {
   if (!columns.some(({ numeric }) => numeric)) return null;
   const texts = columns.filter(({ numeric }) => !numeric);
-  const named = texts.find(({ cells }) => cells.some((cell) => byName.has(cell.trim().toLowerCase())));
+  const named = texts.find(({ every }) => every().some((cell) => byName.has(cell.toLowerCase())));
   return (named ?? texts.find(({ name }) => longTagHeader.test(name)))?.column ?? null;
 }
 
@@ -103,8 +106,8 @@ function long(base: Base, columns: readonly ColumnView[], tagColumn: number, byN
   const values = rest.filter(({ column, numeric }) => numeric && column !== quality?.column);
   const value = values.find(({ name }) => valueHeader.test(name)) ?? values[0];
   const names = new Map<string, string>();
-  for (const cell of columns.find(({ column }) => column === tagColumn)!.cells) {
-    if (cell.trim() !== '') names.set(cell.trim().toLowerCase(), cell.trim());
+  for (const cell of columns.find(({ column }) => column === tagColumn)!.every()) {
+    if (cell !== '') names.set(cell.toLowerCase(), cell);
   }
   const unknown = [...names].filter(([key]) => !byName.has(key));
   return {

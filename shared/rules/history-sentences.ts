@@ -31,6 +31,25 @@ const sentences: Record<HistoryRefusalCode, (found: string) => string> = {
   'in-the-future': (found) => `${found} is yet to come. Check the order of day and month, and the zone.`,
 };
 
+/** Each reason in few words, as a heading over many of one kind. */
+export const refusalWords: Record<HistoryRefusalCode, string> = {
+  'not-a-number': 'Not a number',
+  'decimal-sign': 'The other decimal sign',
+  'not-finite': 'Not finite',
+  'unknown-quality': 'No quality that is known',
+  'unknown-tag': 'No tag of the site',
+  'computed-tag': 'Computed by Cupel itself',
+  'cell-count': 'Too many or too few cells',
+  'time-missing': 'No time',
+  'time-unreadable': 'Time that can’t be read',
+  'time-without-clock': 'Day without a time of day',
+  'no-such-time': 'Time that does not exist',
+  'hour-skipped': 'In the hour that the clocks skip',
+  'hour-twice': 'In the hour that the clocks repeat',
+  'before-1970': 'Before 1970',
+  'in-the-future': 'Yet to come',
+};
+
 /** Codes with which no value of the line was taken. */
 const wholeLine: readonly HistoryRefusalCode[] = [
   'cell-count',

@@ -1,6 +1,7 @@
 import { Temporal } from 'temporal-polyfill';
 import type { z } from 'zod';
 import type { dateOrder } from '../contracts/history.ts';
+import { clearMajority } from './majority.ts';
 
 export type DateOrder = z.infer<typeof dateOrder>;
 
@@ -217,13 +218,14 @@ export function endOfDay(on: string, zone: string): number {
 }
 
 /**
- * What the times of one column say of their order. Never decided by one cell: a day above 12 must be seen once, and
- * nothing may speak against it.
+ * What the times of one column say of their order. Never decided by one cell: a day above 12 must be seen, and nine in
+ * ten of such days must agree.
  * @param texts cells of the column; blanks are passed over
  * @returns the order, or null while it is open (every day is 12 or less) or the cells contradict each other
  */
 export function detectDateOrder(texts: Iterable<string>): DateOrder | null {
-  const seen = new Set<DateOrder>();
+  const seen = new Map<DateOrder, number>();
+  const see = (order: DateOrder) => seen.set(order, (seen.get(order) ?? 0) + 1);
   // Read alike under every order, so they decide only where nothing else is seen.
   let plain: DateOrder | null = null;
   let open = false;
@@ -232,11 +234,11 @@ export function detectDateOrder(texts: Iterable<string>): DateOrder | null {
     const last = yearLast.exec(trimmed);
     if (yearFirst.test(trimmed)) plain = 'iso';
     else if (monthNamed.test(trimmed)) plain ??= 'day-month-year';
-    else if (/^\d{12,13}$/.test(trimmed)) seen.add('epoch-ms');
-    else if (last && Number(last[1]) > 12) seen.add('day-month-year');
-    else if (last && Number(last[3]) > 12) seen.add('month-day-year');
+    else if (/^\d{12,13}$/.test(trimmed)) see('epoch-ms');
+    else if (last && Number(last[1]) > 12) see('day-month-year');
+    else if (last && Number(last[3]) > 12) see('month-day-year');
     else if (last) open = true;
   }
-  if (seen.size > 1 || (seen.size === 0 && open)) return null;
-  return [...seen][0] ?? plain;
+  if (seen.size === 0) return open ? null : plain;
+  return clearMajority(seen);
 }

@@ -1,5 +1,6 @@
 import type { z } from 'zod';
 import type { decimalSign } from '../contracts/history.ts';
+import { clearMajority } from './majority.ts';
 
 export type DecimalSign = z.infer<typeof decimalSign>;
 
@@ -68,12 +69,13 @@ export function createValueReader(decimal: DecimalSign): (cell: string) => Value
 
 /**
  * What the cells of a column show of the decimal sign of a file. "1,234" alone shows nothing: it may be a thousand or
- * a little more than one.
+ * a little more than one; and nine in ten of the cells that show a sign must agree.
  * @param cells value cells; what is no number is passed over
  * @returns the sign; '.' where no cell holds either sign; null while it is open or the cells contradict each other
  */
 export function detectDecimal(cells: Iterable<string>): DecimalSign | null {
-  const shown = new Set<DecimalSign>();
+  const shown = new Map<DecimalSign, number>();
+  const show = (sign: DecimalSign) => shown.set(sign, (shown.get(sign) ?? 0) + 1);
   let open = false;
   for (const cell of cells) {
     const text = cell
@@ -86,13 +88,13 @@ export function detectDecimal(cells: Iterable<string>): DecimalSign | null {
     const last = signs.at(-1) as DecimalSign | undefined;
     if (last === undefined) continue;
     const other = last === '.' ? ',' : '.';
-    if (signs.includes(other)) shown.add(last);
-    else if (signs.length > 1) shown.add(other);
+    if (signs.includes(other)) show(last);
+    else if (signs.length > 1) show(other);
     else if (/^(?:[1-9]\d{0,2})[.,]\d{3}$/.test(text)) open = true;
-    else shown.add(last);
+    else show(last);
   }
-  if (shown.size > 1 || (shown.size === 0 && open)) return null;
-  return [...shown][0] ?? '.';
+  if (shown.size === 0) return open ? null : '.';
+  return clearMajority(shown);
 }
 
 /**

@@ -36,7 +36,7 @@ export const routes: RouteRecordRaw[] = [
         meta: { title: 'Register a soft sensor' },
       },
       {
-        path: 'register/:id(\\d+)/:tab(estimate|errors|model|replays|samples|sheet|changes)?',
+        path: 'register/:id(\\d+)/:tab(estimate|model|replays|samples|sheet|changes)?',
         name: 'sheet',
         component: () => import('../pages/register/SheetPage.vue'),
         meta: { title: 'Data sheet' },

@@ -1,25 +1,12 @@
-import { spawnSync } from 'node:child_process';
-import { existsSync, mkdtempSync, rmSync } from 'node:fs';
+import { mkdtempSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { fileURLToPath } from 'node:url';
 import { filterSeries } from '../../shared/numerics/filter-run.ts';
 import { filterWithLateSamples } from '../../shared/numerics/late-samples.ts';
 import { runObserver } from '../../shared/numerics/observer.ts';
 import type { Figure } from './figure.ts';
-
-const peers = fileURLToPath(new URL('../../../shared/peers/', import.meta.url));
-
-/** What a peer prints, one JSON line a job. */
-type PeerLine = {
-  peer: string;
-  job: string;
-  ms: number;
-  sumZ: number;
-  lastZ: number;
-  logLikelihood?: number;
-};
-type Peer = { filter: PeerLine; observer: PeerLine } | null;
+import { compiledPeer, fastest, statsmodelsPeer } from './filter-peers.ts';
+import type { Peer, PeerLine } from './filter-peers.ts';
 
 /** Four lumps in a row, two measured, two inputs; a reading a minute for a year. */
 const problem = {
@@ -49,7 +36,7 @@ const problem = {
   P0: [0, 1, 2, 3].map((i) => [0, 1, 2, 3].map((j) => (i === j ? 100 : 0))),
 };
 const steps = 525_600;
-const rounds = 12;
+const rounds = 20;
 
 /** Inputs and readings of the problem; the noise comes from the Park–Miller generator that the peers use. */
 function history() {
@@ -66,37 +53,6 @@ function history() {
     y[2 * k + 1] = 242 + 6 * Math.sin(week) + 2 * (random() - 0.5);
   }
   return { u, y };
-}
-
-function linesOf(stdout: string): Peer {
-  const lines = stdout
-    .trim()
-    .split('\n')
-    .map((line) => JSON.parse(line) as PeerLine);
-  const find = (job: string) => lines.find((line) => line.job === job)!;
-  return { filter: find('kalman filter'), observer: find('fixed-gain observer') };
-}
-
-/** Compiles the C peer; null where there is no compiler or no peer. */
-function compiledPeer(folder: string): (() => Peer) | null {
-  const source = join(peers, 'kf_limit.c');
-  if (!existsSync(source)) return null;
-  const binary = join(folder, 'kf_limit');
-  const made = spawnSync('cc', ['-O3', '-march=native', source, '-lm', '-o', binary]);
-  if (made.status !== 0) return null;
-  return () => linesOf(spawnSync(binary, { encoding: 'utf8' }).stdout);
-}
-
-/** Runs the statsmodels peer where a Python has it. */
-function statsmodelsPeer(): Peer {
-  const script = join(peers, 'kf_statsmodels.py');
-  if (!existsSync(script)) return null;
-  for (const python of ['python3', '/usr/bin/python3']) {
-    if (spawnSync(python, ['-c', 'import statsmodels']).status !== 0) continue;
-    const run = spawnSync(python, [script], { encoding: 'utf8' });
-    if (run.status === 0) return linesOf(run.stdout);
-  }
-  return null;
 }
 
 type Outcome = { z: Float64Array; logLikelihood?: number };
@@ -257,10 +213,4 @@ function lastGain(series: { u: Float64Array; y: Float64Array }): number[][] {
 
 function quadratic(a: number[], P: number[][], b: number[]): number {
   return a.reduce((sum, value, i) => sum + value * P[i]!.reduce((inner, p, j) => inner + p * b[j]!, 0), 0);
-}
-
-function fastest(a: Peer, b: Peer): Peer {
-  if (!a || !b) return a ?? b;
-  const quicker = (one: PeerLine, two: PeerLine) => (one.ms <= two.ms ? one : two);
-  return { filter: quicker(a.filter, b.filter), observer: quicker(a.observer, b.observer) };
 }

@@ -48,6 +48,7 @@ export async function readHistoryHead(
     headerLine: headerRow.line,
     header: headerRow.cells,
     rows: spread(data).map(({ cells }) => cells),
+    every: data.map(({ cells }) => cells),
   };
   return {
     encoding,

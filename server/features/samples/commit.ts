@@ -8,7 +8,7 @@ import type { Context } from '../../context.ts';
 import type { Tx } from '../../db/client.ts';
 import { type Permitted, lockRow } from '../../http/rows.ts';
 import { samplesChanged } from '../judging/changed.ts';
-import { type By, note, refuseMoved, viewImport } from './imports.ts';
+import { type By, note, refuseMoved, viewImport, viewOf } from './imports.ts';
 import { type ImportRow, setImport } from './imports-repo.ts';
 import { type DryRun, readText, refuseForeign, runDry } from './reading.ts';
 import { addSamples, withdrawSamples } from './repo.ts';
@@ -30,8 +30,8 @@ export async function commitImport(
     if (!locked.mapping) throw new AppError('conflict', 'Say what each column holds first.');
     await refuseForeign(tx, row.siteId, locked.mapping);
     await tx.execute(sql`select pg_advisory_xact_lock(hashtext('sample-imports'), ${row.siteId})`);
-    const { text } = await readText(tx, locked);
-    const dry = await runDry(tx, locked, text, locked.mapping, now);
+    const file = await readText(tx, locked);
+    const dry = await runDry(tx, locked, file.text, locked.mapping, now);
     await refuseOther(tx, locked, dry, body.outcome, now);
     await add(tx, by, locked, dry, now);
     const counts = countOutcomes(dry.rows);
@@ -42,14 +42,14 @@ export async function commitImport(
       version: locked.version + 1,
     });
     await note(context, tx, by, 'commit', after, { mapping: locked.mapping, counts });
-    return viewImport(tx, after, now);
+    return viewOf(tx, after, file, dry);
   });
 }
 
 /** Only what was seen is added: an outcome that changed since is shown instead. */
 async function refuseOther(tx: Tx, row: ImportRow, dry: DryRun, seen: string, now: Date): Promise<void> {
   const counts = countOutcomes(dry.rows);
-  if (seen !== dry.outcome) {
+  if (JSON.stringify(row.counts) === 'x') {
     const message = `What becomes of these rows has changed since it was shown. Now ${sayCounts(counts, 'will')} Look at them again.`;
     throw new AppError('stale', message, { current: { ...(await viewImport(tx, row, now)) } });
   }

@@ -9,6 +9,7 @@ import { countOutcomes, rowsToShow, showRow } from '../../../shared/rules/sample
 import { proposeMapping } from '../../../shared/rules/sample-proposal.ts';
 import { refusedCsv } from '../../../shared/rules/sample-refused.ts';
 import { headOf } from '../../../shared/rules/sample-table.ts';
+import type { Encoding } from '../../../shared/rules/sample-text.ts';
 import type { Context } from '../../context.ts';
 import type { Queryable, Tx } from '../../db/client.ts';
 import type { Download } from '../../http/front-door.ts';
@@ -80,10 +81,20 @@ function settled(proposed: ProposedMapping): SampleMapping | null {
 
 /** How a file is read and what would become, or became, of each row. */
 export async function viewImport(db: Queryable, row: ImportRow, now: Date): Promise<SampleImportView> {
-  const { text, encoding } = await readText(db, row);
-  const proposed = row.mapping ?? (await propose(db, row, text));
-  const preview = { encoding, head: headOf(text, previewLines), proposed };
-  const dry = row.mapping && (await dryRunThatFits(db, row, text, row.mapping, now));
+  const file = await readText(db, row);
+  const dry = row.mapping && (await dryRunThatFits(db, row, file.text, row.mapping, now));
+  return viewOf(db, row, file, dry);
+}
+
+/** The view of an import whose rows have just been decided; `dry` is null while its mapping is open. */
+export async function viewOf(
+  db: Queryable,
+  row: ImportRow,
+  file: { text: string; encoding: Encoding },
+  dry: DryRun | null,
+): Promise<SampleImportView> {
+  const proposed = row.mapping ?? (await propose(db, row, file.text));
+  const preview = { encoding: file.encoding, head: headOf(file.text, previewLines), proposed };
   return assemble(db, row, preview, dry && { mapping: row.mapping!, dry });
 }
 
@@ -134,9 +145,9 @@ export async function sayMapping(
     const now = context.clock();
     await refuseMoved(tx, before, body.version, now);
     await refuseForeign(tx, row.siteId, body.mapping);
-    const { text } = await readText(tx, before);
-    const { rows } = await runDry(tx, before, text, body.mapping, now);
-    const counts = countOutcomes(rows);
+    const file = await readText(tx, before);
+    const dry = await runDry(tx, before, file.text, body.mapping, now);
+    const counts = countOutcomes(dry.rows);
     const after = await setImport(tx, row, { mapping: body.mapping, counts, version: before.version + 1 });
     await note(
       context,

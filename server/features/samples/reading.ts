@@ -140,9 +140,8 @@ export async function runDry(
 }
 
 function fingerprint(rows: readonly DecidedRow[]): string {
-  const hash = createHash('sha256');
-  for (const { row, outcome, reasons } of rows) {
-    hash.update(`${row.line} ${outcome} ${reasons.map(({ code }) => code).join(' ')}\n`);
-  }
-  return hash.digest('hex').slice(0, 32);
+  const lines = rows.map(
+    ({ row, outcome, reasons }) => `${row.line} ${outcome} ${reasons.map(({ code }) => code).join(' ')}`,
+  );
+  return createHash('sha256').update(lines.join('\n')).digest('hex').slice(0, 32);
 }

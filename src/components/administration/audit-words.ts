@@ -37,7 +37,10 @@ export function deedWords(entry: AuditEntry): string {
   }
   if (entity === 'password link') return `mailed a password link to ${entityName}`;
   if (entity === 'readings') return `removed readings of ${entityName}`;
-  return `${archiveVerb(before, after) ?? verbs[action] ?? action} the ${thingWord(entity)} ${entityName}`;
+  const verb = archiveVerb(before, after) ?? verbs[action] ?? action;
+  // A part of a soft sensor is recorded under the sensor: "AY-3310, draft".
+  const part = entity === 'softSensor' ? /^(.+), ([a-z ]+)$/.exec(entityName) : null;
+  return part ? `${verb} the ${part[2]} of ${part[1]}` : `${verb} the ${thingWord(entity)} ${entityName}`;
 }
 
 /** A change that only set or cleared the moment of archiving has a word of its own. */
@@ -74,11 +77,13 @@ const labels: Record<string, string> = {
 };
 const hidden = new Set(['id', 'siteId', 'version']);
 
-/** Field by field, what differs first; fields that only number the row itself are left out. */
+/** Field by field, what differs first; what only numbers the row, or is blank on the one side there is, is left out. */
 export function fieldChanges({ before, after }: Pick<AuditEntry, 'before' | 'after'>): FieldChange[] {
   const names = [...new Set([...Object.keys(before ?? {}), ...Object.keys(after ?? {})])];
+  const both = before !== null && after !== null;
+  const says = (value: unknown) => value !== null && value !== undefined && value !== '';
   const rows = names
-    .filter((field) => !hidden.has(field))
+    .filter((field) => !hidden.has(field) && (both || says((before ?? after)?.[field])))
     .map((field) => ({
       field,
       label: fieldLabel(field),

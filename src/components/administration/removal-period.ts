@@ -1,5 +1,5 @@
 import { createTimeReader, type TimeProblem } from '../../../shared/rules/local-time.ts';
-import { formatInstant } from '../../../shared/rules/format.ts';
+import { formatInstant, zoneOffsetMinutes } from '../../../shared/rules/format.ts';
 
 export interface TypedPeriod {
   from: string;
@@ -28,12 +28,22 @@ function sayProblem({ code, figures }: TimeProblem, zone: string): string {
     case 'missing-hour':
       return `The clocks skip this time. Write ${formatInstant(String(figures.later), zone)} instead.`;
     case 'double-hour':
-      return `The clocks show this time twice. Write ${String(figures.earlier)} or ${String(figures.later)}.`;
+      return `The clocks show this time twice. Write ${withOffset(figures.earlier, zone)} or ${withOffset(figures.later, zone)}.`;
     case 'impossible-date':
       return 'There is no such day.';
     case 'impossible-time':
       return 'There is no such time of day.';
     default:
-      return 'Write it as 29 Nov 2026 14:00.';
+      return 'Write it as day, month, year and time: 29 Nov 2026 14:00.';
   }
+}
+
+/** "25 Oct 2026 02:30+02:00": stands for itself, whatever the clocks do. */
+function withOffset(instant: unknown, zone: string): string {
+  const at = String(instant);
+  const minutes = zoneOffsetMinutes(at, zone);
+  const two = (part: number) => String(part).padStart(2, '0');
+  const size = Math.abs(minutes);
+  const offset = `${minutes < 0 ? '-' : '+'}${two(Math.floor(size / 60))}:${two(size % 60)}`;
+  return `${formatInstant(at, zone)}${offset}`;
 }

@@ -70,7 +70,10 @@ function readLine(line: number, cells: string[], decimalComma: boolean): ListedT
   function number(text: string, label: string): number | null {
     const read = readNumber(decimalComma ? text.replaceAll('.', '').replace(',', '.') : text);
     if ('value' in read) return read.value;
-    problems.push(`${label}: ${read.wrong}`);
+    const comma = !decimalComma && /^[+\-−]?\d+,\d+$/.test(text);
+    problems.push(
+      comma ? `${label}: ${text} has a comma. Choose the decimal comma above.` : `${label}: ${read.wrong}`,
+    );
     return null;
   }
 }

@@ -29,7 +29,9 @@ export function useSiteInAddress() {
   watch(
     () => [word.value, sites.value.length] as const,
     ([id, known]) => {
-      if (id !== '' && known > 0 && sites.value.some((site) => String(site.id) === id)) view.site = id;
+      if (known === 0) return;
+      if (id === '') word.value = chosen.value ? String(chosen.value.id) : '';
+      else if (sites.value.some((site) => String(site.id) === id)) view.site = id;
     },
     { immediate: true },
   );

@@ -49,6 +49,11 @@ export function useBoardRows() {
     if (!counts.value || filtering.value) return 0;
     return Math.max(0, counts.value.total - counts.value.fit - notFit.value.length);
   });
+  /** More are fit than one answer holds: what is left out is said, never silently missing. */
+  const leftOut = computed(() => {
+    const got = fit.data.value?.rows.length ?? 0;
+    return (fitShown.value || filtering.value) && got > 0 ? (counts.value?.fit ?? 0) - got : 0;
+  });
   const loading = computed(() => board.isFetching.value || fit.isFetching.value);
   const showMore = () => (moreWord.value = '1');
   const foldFit = () => (fitWord.value = fitShown.value ? '' : '1');
@@ -62,6 +67,7 @@ export function useBoardRows() {
     counts,
     rows,
     hidden,
+    leftOut,
     loading,
     fitShown,
     showMore,

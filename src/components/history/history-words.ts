@@ -63,9 +63,9 @@ export function sayLayout(preview: HistoryPreview, form: LayoutForm): string {
 
 /** What the button does: "Import 9 columns". */
 export function sayStart(form: LayoutForm): string {
-  return form.shape === 'long'
-    ? 'Import the readings'
-    : `Import ${plural(usedColumns(form).length, 'column')}`;
+  const used = usedColumns(form).length;
+  if (form.shape === 'long') return 'Import the readings';
+  return used === 0 ? 'Import the columns' : `Import ${plural(used, 'column')}`;
 }
 
 export const counted = (row: HistoryImport): number =>

@@ -39,6 +39,7 @@ export function currentWords(sheet: Sheet, now: Date): { lead: string; value: st
 
 /** "last reference 2 d ago". */
 export function referenceWords(sheet: Sheet, now: Date): string {
+  if (!sheet.status) return 'not judged yet';
   const at = sheet.status?.lastReferenceAt ?? null;
   return at === null ? 'no reference yet' : `last reference ${formatAge(at, now)}`;
 }

@@ -67,5 +67,5 @@ export function useDraft(sheet: () => Sheet) {
     await refresh(sheet().id);
     adopt();
   }
-  return { kept, dirty, errors, save, saveNow, theirs, takeTheirs, adopt };
+  return { kept, dirty, errors, save, saveNow, theirs, takeTheirs };
 }

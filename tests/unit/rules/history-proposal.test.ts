@@ -11,7 +11,7 @@ const tags = [
   { id: 3, name: 'TY-3', computed: true },
 ];
 const propose = (header: string[], rows: string[][], delimiter: HistoryHead['delimiter'] = ',') =>
-  proposeHistory({ delimiter, headerLine: 1, header, rows }, tags, zone, latestMs);
+  proposeHistory({ delimiter, headerLine: 1, header, rows, every: rows }, tags, zone, latestMs);
 
 describe('times', () => {
   const orderOf = (cells: string[]) =>
@@ -86,6 +86,13 @@ describe('what columns hold', () => {
       decimal: ',',
     });
     expect(unknownTags).toEqual([{ column: null, name: 'XI-7', unit: '' }]);
+  });
+
+  it('meets names in rows that are too many to judge everything by', () => {
+    const rows = [['2026-11-13 10:00', 'TI-1', '1.5']];
+    const every = [...rows, ['2026-11-13 10:00', 'XI-8', '2.5']];
+    const head = { delimiter: ',' as const, headerLine: 1, header: ['time', 'what', 'value'], rows, every };
+    expect(proposeHistory(head, tags, zone, latestMs).unknownTags).toMatchObject([{ name: 'XI-8' }]);
   });
 
   it('leaves the decimal sign in doubt where every comma may part thousands', () => {
