@@ -50,10 +50,11 @@ async function importHistory(page: Page): Promise<void> {
   await page.goto(`${site.address}/history`);
   await page.getByRole('button', { name: 'Add a file' }).first().click();
   await page.locator('input[type=file]').setInputFiles(path.join(folder, 'history.csv'));
-  const send = page.getByRole('button', { name: /^(Send|Upload|Read)/ });
-  if (await send.isVisible().catch(() => false)) await send.click();
   await page.waitForURL(/\/history\/\d+/);
-  await page.getByRole('button', { name: /^(Import|Add)/ }).first().click();
+  await page
+    .getByRole('button', { name: /^(Import|Add)/ })
+    .first()
+    .click();
   await page.getByRole('heading', { level: 1, name: /330,597/ }).waitFor({ timeout: 90_000 });
 }
 
@@ -63,7 +64,7 @@ async function register(page: Page): Promise<void> {
   await page.getByLabel('Name', { exact: true }).fill('Stack nitrogen oxides');
   await page.getByLabel('Quantity', { exact: true }).fill('concentration');
   await page.getByLabel('Engineering unit', { exact: true }).fill('mg/m³');
-  await page.getByLabel('Decimals shown', { exact: true }).fill('4');
+  await page.getByLabel('Decimals shown', { exact: true }).fill('3');
   await choose(page, 'Unit of plant', /Gas turbine 1/);
   await page.getByRole('button', { name: /^Add a sample point/ }).click();
   await page.getByLabel(/name/i).last().fill('Stack');
@@ -90,7 +91,6 @@ async function uploadSamples(page: Page): Promise<void> {
 
 async function writeAndFitModel(page: Page, sheet: string): Promise<void> {
   await page.goto(`${sheet}/model`);
-  await press(page, 'Begin a draft');
   for (const input of inputs) await choose(page, 'Add an input', new RegExp(`^${input}\\b`));
   await page.getByLabel('Computed every', { exact: true }).fill('1');
   await choose(page, 'Unit of computed every', 'hours');
@@ -113,24 +113,24 @@ async function replayDraft(page: Page, sheet: string): Promise<void> {
   await page.waitForURL(/\/replays\/\d+/);
 }
 
-describe.skipIf(withoutData('gas_turbine_nox'))('in the browser (skipped where ../shared/data is absent)', () => {
-  it('an engineer goes from two CSV files to how wrong the estimate is', async () => {
-    const page = await site.open();
-    await signInAs(site, page, email, password);
-    try {
-    await makeUnitAndTags(page);
-    await importHistory(page);
-    await register(page);
-    const sheet = /.*\/register\/\d+/.exec(page.url())![0];
-    await uploadSamples(page);
-    await writeAndFitModel(page, sheet);
-    await replayDraft(page, sheet);
-    const figures = page.getByRole('table').filter({ hasText: 'Holding the last result' });
-    await figures.getByText('8.4674').waitFor({ timeout: 60_000 });
-    const words = await figures.innerText();
-    expect(words).toContain('+0.9401');
-    expect(words).toContain('6.9716');
-    } catch (e) { await page.screenshot({ path: '/tmp/fail.png' }); throw e; }
-    expect(page.url()).toContain('/register/');
-  }, 240_000);
-});
+describe.skipIf(withoutData('gas_turbine_nox'))(
+  'in the browser (skipped where ../shared/data is absent)',
+  () => {
+    it('an engineer goes from two CSV files to how wrong the estimate is', async () => {
+      const page = await site.open();
+      await signInAs(site, page, email, password);
+      await makeUnitAndTags(page);
+      await importHistory(page);
+      await register(page);
+      const sheet = /.*\/register\/\d+/.exec(page.url())![0];
+      await uploadSamples(page);
+      await writeAndFitModel(page, sheet);
+      await replayDraft(page, sheet);
+      const figures = page.getByRole('table').filter({ hasText: 'Holding the last result' });
+      await figures.getByText('8.4674').waitFor({ timeout: 60_000 });
+      const words = await figures.innerText();
+      expect(words).toContain('+0.9401');
+      expect(words).toContain('6.9716');
+    }, 240_000);
+  },
+);
