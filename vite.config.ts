@@ -29,7 +29,8 @@ const plugins = () => [endpointAddresses(), vue({ template: { transformAssetUrls
 
 export default defineConfig(({ isSsrBuild }) => ({
   plugins: plugins(),
-  server: { proxy: { '/api': `http://127.0.0.1:${devServerPort}` } },
+  // The Host header stays, or the server would take our own page for a foreign one.
+  server: { proxy: { '/api': { target: `http://127.0.0.1:${devServerPort}`, changeOrigin: false } } },
   build: isSsrBuild
     ? {
         target: 'node20',

@@ -1,4 +1,4 @@
-import { flat } from './filter-setup.ts';
+import { changeCoordinates, flat } from './fixed-gain.ts';
 import type { FilterSetup, Pattern, SteadyPattern } from './filter-setup.ts';
 import type { Gaussian, GridSeries } from './kalman.ts';
 import { advance, advanceState } from './kernels/general-kernels.ts';
@@ -153,6 +153,7 @@ function runFixed(runner: Runner, steady: SteadyPattern, to: number): void {
   const { work, scratch } = runner;
   const from = runner.k;
   if (!runner.predicted) advanceState(work, from - 1, new Float64Array(work.n));
+  changeCoordinates(steady.toKernel, work.x);
   if (runner.setup.feedthrough && scratch) {
     let end = from;
     while (runner.k < to && end === runner.k) {
@@ -164,6 +165,7 @@ function runFixed(runner: Runner, steady: SteadyPattern, to: number): void {
   } else {
     runner.k = steady.kernel(work, steady.work, from, to);
   }
+  changeCoordinates(steady.fromKernel, work.x);
   const steps = runner.k - from;
   if (work.sd.length > 0) work.sd.fill(steady.sd, from, runner.k);
   work.sums[0]! += steps * steady.work.m;

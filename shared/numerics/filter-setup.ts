@@ -1,8 +1,8 @@
 import { Matrix } from 'ml-matrix';
 import { Refused } from './attempt.ts';
 import { decorrelate } from './kalman.ts';
-import { steadyKernelFor } from './kernels/kernels.ts';
-import type { SteadyKernel, SteadyWork } from './kernels/work.ts';
+import { fixedGain, flat } from './fixed-gain.ts';
+import type { FixedGain } from './fixed-gain.ts';
 import { choleskyOf, largest, solveFor } from './linear-algebra.ts';
 import { dlyap } from './lyapunov.ts';
 import { steadyState } from './riccati.ts';
@@ -15,9 +15,7 @@ export type Pattern = number;
 export const mostReadings = 30;
 
 /** The filter's steady state for one pattern, ready for the fixed-gain kernel. */
-export type SteadyPattern = {
-  work: SteadyWork;
-  kernel: SteadyKernel;
+export type SteadyPattern = FixedGain & {
   predicted: Float64Array;
   filtered: Float64Array;
   sd: number;
@@ -94,10 +92,8 @@ export class FilterSetup {
     const h = H.getRowVector(0);
     const root = present.length > 0 ? choleskyOf(S, 'R') : S;
     const white = present.length > 0 ? solveFor(root, Matrix.eye(present.length), 'R') : S;
-    const work = fixedGainWork(this.M, { L, K: A.mmul(L), C, present, white });
     return {
-      work,
-      kernel: steadyKernelFor(work.n, work.m),
+      ...fixedGain(this.M, { L, K: A.mmul(L), C, present, white }),
       predicted: flat(P),
       filtered: flat(filtered),
       sd: Math.sqrt(Math.max(h.mmul(filtered).mmul(h.transpose()).get(0, 0), 0)),
@@ -122,40 +118,7 @@ export class FilterSetup {
   }
 }
 
-/** Work of the fixed-gain kernel from a filter gain L, its predictor form K, the rows C and, for the NIS, S^(−1/2). */
-export function fixedGainWork(
-  M: ModelMatrices,
-  gain: { L: Matrix; K: Matrix; C: Matrix; present: number[]; white?: Matrix },
-): SteadyWork {
-  const { L, K, C, present, white } = gain;
-  const m = present.length;
-  const h = M.H.getRowVector(0);
-  const absent = Array.from({ length: M.m }, (_, j) => j).filter((j) => !present.includes(j));
-  return {
-    n: M.n,
-    m,
-    p: M.p,
-    stride: M.m,
-    present: Int32Array.from(present),
-    absent: Int32Array.from(absent),
-    M: flat(m > 0 ? Matrix.sub(M.A, K.mmul(C)) : M.A),
-    B: flat(M.B.transpose()),
-    K: flat(K.transpose()),
-    C: flat(C),
-    W: Float64Array.from((white ?? Matrix.zeros(m, m)).to2DArray().flatMap((row, i) => row.slice(0, i + 1))),
-    scored: white !== undefined,
-    H: flat(h),
-    G: m > 0 ? flat(h.mmul(L)) : new Float64Array(0),
-    F: flat(M.F.getRowVector(0)),
-  };
-}
-
 /** Numbers of the readings present in a pattern. */
 export function presentIn(pattern: Pattern, m: number): number[] {
   return Array.from({ length: m }, (_, j) => j).filter((j) => (pattern >> j) & 1);
-}
-
-/** The matrix as a flat array, row after row. */
-export function flat(M: Matrix): Float64Array {
-  return Float64Array.from(M.to1DArray());
 }

@@ -1,10 +1,11 @@
 import { Matrix } from 'ml-matrix';
 import { attemptSeries, giveUp } from './attempt.ts';
-import { fixedGainWork, flat, mostReadings } from './filter-setup.ts';
+import { mostReadings } from './filter-setup.ts';
+import { changeCoordinates, fixedGain, flat } from './fixed-gain.ts';
+import type { FixedGain } from './fixed-gain.ts';
 import { readSeries, requireFinite } from './kalman.ts';
 import type { GridSeries } from './kalman.ts';
 import { hasPattern } from './kernels/general-kernels.ts';
-import { steadyKernelFor } from './kernels/kernels.ts';
 import type { FilterWork, SteadyWork } from './kernels/work.ts';
 import { readColumn, readMatrix, spectralRadius } from './linear-algebra.ts';
 import type { Result } from './result.ts';
@@ -43,7 +44,7 @@ export function runObserver(
     const start = readColumn(x0, 'x0', M.n);
     const N = readSeries(M, series);
     const all = Array.from({ length: M.m }, (_, j) => j);
-    const steady = fixedGainWork(M, { L, K, C: M.C, present: all });
+    const steady = fixedGain(M, { L, K, C: M.C, present: all });
     const work = observerWork(M, start, withoutFeedthrough(M, series), N);
     run(work, steady, N);
     if (![...work.x, work.sums[3]!].every(Number.isFinite)) {
@@ -97,8 +98,9 @@ function observerWork(M: ModelMatrices, start: Matrix, { u, y }: GridSeries, N: 
 }
 
 /** The kernel while all readings are there, one step at a time where some are not. */
-function run(work: FilterWork, steady: SteadyWork, N: number): void {
-  const kernel = steadyKernelFor(work.n, work.m);
+function run(work: FilterWork, fixed: FixedGain, N: number): void {
+  const { kernel, work: steady } = fixed;
+  changeCoordinates(fixed.toKernel, work.x);
   const next = new Float64Array(work.n);
   let k = 0;
   while (k < N) {
@@ -106,6 +108,7 @@ function run(work: FilterWork, steady: SteadyWork, N: number): void {
     while (k < N && !hasPattern(work.y, k * work.m, steady.present, steady.absent))
       stepWithGaps(work, steady, k++, next);
   }
+  changeCoordinates(fixed.fromKernel, work.x);
 }
 
 /** x = (A − K C) x + K y + B u where the innovation of each missing reading is put to 0, by y = C x. */

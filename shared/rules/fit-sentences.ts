@@ -1,8 +1,13 @@
 import type { FitRefusal } from '../numerics/regression.ts';
+import { formatDate } from './format.ts';
 
-/** Why a least-squares fit was refused, and how to mend it. */
-export function fitRefusalSentence(refusal: FitRefusal, period: { from: string; to: string }): string {
-  const between = `between ${period.from.slice(0, 10)} and ${period.to.slice(0, 10)}`;
+/** Why a least-squares fit on the samples of [from, to) was refused, and how to mend it; days by the site's clock. */
+export function fitRefusalSentence(
+  refusal: FitRefusal,
+  period: { from: string; to: string; zone: string },
+): string {
+  const last = new Date(Date.parse(period.to) - 1);
+  const between = `between ${formatDate(period.from, period.zone)} and ${formatDate(last, period.zone)}`;
   switch (refusal.reason) {
     case 'not-enough-data':
       if (!refusal.got)

@@ -21,6 +21,8 @@ export interface HealthInput {
   /** Accepted references of the last window that did not count, and all of them. */
   uncounted: { count: number; of: number };
   lastReferenceMs: number | null;
+  /** Since when errors count: the present model's approval, or the end of what it was fitted on; null: always. */
+  baselineMs: number | null;
   lastEstimateMs: number | null;
   promisedReferenceMs: number;
   historyArrives: 'live' | 'uploaded';
@@ -63,7 +65,7 @@ function proofReasons(input: HealthInput): HealthReason[] {
   if (input.lastEstimateMs === null || input.nowMs - input.lastEstimateMs > patience(input)) {
     say('no-inputs', { sinceMs: input.lastEstimateMs, nowMs: input.nowMs });
   }
-  if (input.lastReferenceMs === null) say('no-reference', {});
+  if (input.lastReferenceMs === null) say('no-reference', { sinceMs: input.baselineMs });
   else if (input.nowMs - input.lastReferenceMs > input.promisedReferenceMs) {
     say('reference-overdue', {
       ageMs: input.nowMs - input.lastReferenceMs,

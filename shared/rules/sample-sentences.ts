@@ -42,7 +42,7 @@ function impossibleDate({ day, month, year, column }: Figures): string {
   const where = column === 'reported' ? ' (in the time of reporting)' : '';
   if (!name) return `There is no month ${month}${where}. Is the order of day and month the other way round?`;
   const leap = month === 2 && day === 29 ? ` ${year}` : '';
-  return `${day} ${name}${leap} does not exist${where}.`;
+  return `${day} ${name}${leap} does not exist${where}. Write the right date in the file.`;
 }
 
 function skippedOrDouble(code: 'missing-hour' | 'double-hour', figures: Figures, zone: string): string {
@@ -72,9 +72,10 @@ function storedDiffers(figures: Figures, zone: string): string {
 const sentences: Record<SampleReasonCode, (figures: Figures, zone: string) => string> = {
   ragged: ({ expected, found }) =>
     `${plural(Number(found), 'cell')} where the header has ${formatCount(Number(expected))}. Is a delimiter missing, or is one inside a text without quotation marks?`,
-  'no-value': ({ written }) => (written === '' ? 'No value.' : `No value, only “${written}”.`),
+  'no-value': ({ written }) =>
+    `No value${written === '' ? '' : `, only “${written}”`}. Write it in the file, or leave the row out.`,
   'text-value': ({ written }) => `“${written}” is no number as this file writes them.`,
-  'no-time': () => 'No time of taking.',
+  'no-time': () => 'No time of taking. Write it in the file.',
   'unreadable-time': (figures) =>
     `${whichTime(figures)}, “${figures.written}”, can’t be read. One looks like 2026-11-29 06:00.`,
   'impossible-date': impossibleDate,
@@ -87,7 +88,7 @@ const sentences: Record<SampleReasonCode, (figures: Figures, zone: string) => st
     `${whichTime(figures)}, “${figures.written}”, lies before 1970. Check the year.`,
   'reported-before-taken': ({ reported }) =>
     `Reported before it was taken (“${reported}”). One of the two times is wrong.`,
-  'no-point': () => 'No sample point.',
+  'no-point': () => 'No sample point. Write it in the file, or choose one for the whole file.',
   'unknown-point': ({ point }) =>
     `There is no sample point ${point} at this site. Add it under Points and methods, or correct the name.`,
   'no-unit': ({ expected }) => `No unit; samples of this point are in ${expected}.`,

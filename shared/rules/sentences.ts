@@ -1,5 +1,5 @@
 import type { Health, HealthReason } from '../contracts/judging.ts';
-import { formatNumber, formatQuantity, plural } from './format.ts';
+import { formatCount, formatNumber, formatQuantity, plural } from './format.ts';
 
 /** What a sentence about one soft sensor needs: its engineering unit and decimals. */
 export interface Measure {
@@ -43,7 +43,9 @@ export function healthSentence(reason: HealthReason, measure: Measure): string {
     case 'worse-than-holding':
       return `No better than holding the last laboratory result: error ${quantity('rmse')} RMSE against ${quantity('holdRmse')} over the last ${plural(figure(reason, 'n'), 'sample')}.`;
     case 'no-reference':
-      return 'No reference yet. Ask for samples.';
+      return reason.figures.sinceMs
+        ? 'No reference since the present model came into force. Ask for samples.'
+        : 'No reference yet. Ask for samples.';
     case 'reference-overdue':
       return `No reference for ${durationWords(figure(reason, 'ageMs'))}; promised every ${durationWords(figure(reason, 'promisedMs'))}.`;
     case 'too-few-errors':
@@ -99,18 +101,25 @@ export interface BoardCounts {
 
 /** The board's headline: its finding, as a sentence. */
 export function boardHeadline(counts: BoardCounts): string {
-  const sensors = counts.total === 1 ? 'soft sensor' : 'soft sensors';
-  if (counts.total === 0) return 'No soft sensor is in service yet.';
-  if (counts.unfit > 0) {
-    const loop = counts.unfitInClosedLoop > 0 ? `, ${counts.unfitInClosedLoop} of them in closed loop` : '';
-    return `${counts.unfit} of ${counts.total} ${sensors} can’t be relied on${loop}.`;
+  const { total, unfit, unproven, watch } = counts;
+  const of = `of ${formatCount(total)} ${total === 1 ? 'soft sensor' : 'soft sensors'}`;
+  if (total === 0) return 'No soft sensor is in service yet.';
+  if (unfit > 0) return `${formatCount(unfit)} ${of} can’t be relied on${loopWords(counts)}.`;
+  if (unproven > 0) {
+    return `${formatCount(unproven)} ${of} ${unproven === 1 ? 'is' : 'are'} unproven; none is known to be unfit.`;
   }
-  if (counts.unproven > 0)
-    return `${counts.unproven} of ${counts.total} ${sensors} are unproven; none is known to be unfit.`;
-  if (counts.watch > 0) return `No soft sensor is unfit; ${counts.watch} of ${counts.total} need watching.`;
-  return counts.total === 1
+  if (watch > 0)
+    return `No soft sensor is unfit; ${formatCount(watch)} of ${formatCount(total)} ${watch === 1 ? 'needs' : 'need'} watching.`;
+  return total === 1
     ? 'The one soft sensor in service is fit.'
-    : `All ${counts.total} soft sensors are fit.`;
+    : `All ${formatCount(total)} soft sensors are fit.`;
+}
+
+function loopWords({ unfit, unfitInClosedLoop }: BoardCounts): string {
+  if (unfitInClosedLoop === 0) return '';
+  return unfit === 1
+    ? '; it is in closed loop'
+    : `, ${formatCount(unfitInClosedLoop)} of them in closed loop`;
 }
 
 /** Below the headline: the rest of the counts. */

@@ -89,7 +89,7 @@ export function useAddMethod() {
 }
 
 /** Takes a sheet that an answer brought, and lets every list that shows it be fetched anew. */
-export function useTakeSheet() {
+function useTakeSheet() {
   const client = useQueryClient();
   return (sheet: Sheet) => {
     client.setQueryData(sheetKey(sheet.id), sheet);

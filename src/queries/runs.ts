@@ -3,7 +3,8 @@ import { computed, type MaybeRefOrGetter, toValue } from 'vue';
 import type { Run } from '../../shared/contracts/runs.ts';
 import { call } from '../api/call.ts';
 
-export const hasEnded = (run: Pick<Run, 'state'>): boolean => ['done', 'failed', 'cancelled'].includes(run.state);
+export const hasEnded = (run: Pick<Run, 'state'>): boolean =>
+  ['done', 'failed', 'cancelled'].includes(run.state);
 
 /** Progress of long work, asked for each second until it has ended. */
 export function useRun(runId: MaybeRefOrGetter<number | null>) {

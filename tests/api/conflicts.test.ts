@@ -95,14 +95,14 @@ it('names who saved last, and when', async () => {
     .post(`/api/v1/sites/${scene.siteId}/areas`)
     .send({ name: 'Hot' })
     .expect(200);
-  server.now.value = new Date('2026-12-01T07:00:00Z');
+  server.now.value = new Date('2031-12-01T07:00:00Z');
   await other.put(`/api/v1/areas/${area.body.id}`).send(body).expect(200);
   server.now.value = null;
   const late = await scene.engineer.put(`/api/v1/areas/${area.body.id}`).send(body).expect(409);
   expect(late.body.current).toMatchObject({
     name: 'Hot end',
     savedBy: 'Jun Brightwell',
-    savedAt: '2026-12-01T07:00:00.000Z',
+    savedAt: '2031-12-01T07:00:00.000Z',
   });
 });
 

@@ -168,16 +168,14 @@ describe('pairs', () => {
     await writeSamples(plant, [10]);
     const sensor = await putInService(plant, { form: 'external', holdLimitMs: 3_600_000, residualSd: null });
     const { db } = server.context;
-    await db
-      .insert(readings)
-      .values(
-        [9, 10, 11].map((k) => ({
-          siteId: plant.siteId,
-          tagId: sensor.estimateTagId,
-          at: at(k),
-          value: 7 + k,
-        })),
-      );
+    await db.insert(readings).values(
+      [9, 10, 11].map((k) => ({
+        siteId: plant.siteId,
+        tagId: sensor.estimateTagId,
+        at: at(k),
+        value: 7 + k,
+      })),
+    );
     await server.refreshSpan(plant.siteId, sensor.estimateTagId);
     await db.transaction((tx) =>
       readingsChanged(tx, { siteId: plant.siteId, tagIds: [sensor.estimateTagId], from: at(9), to: at(11) }),
@@ -213,7 +211,7 @@ describe('what a fit refuses', () => {
 
   it('a period without samples', async () => {
     expect(await fitFails((plant) => plant.tagIds, [])).toBe(
-      'There are no samples with all inputs between 2026-01-01 and 2026-01-09. Choose a longer period or add samples.',
+      'There are no samples with all inputs between 1 Jan 2026 and 9 Jan 2026. Choose a longer period or add samples.',
     );
   });
 

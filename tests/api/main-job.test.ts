@@ -92,7 +92,10 @@ describe('the main job, once through', () => {
     const board = await get(manager, '/board', { health: 'all' });
     expect(board.counts).toMatchObject({ total: 1, fit: 1 });
     expect(board.rows[0]).toMatchObject({ softSensorId: sheet.id, health: 'fit' });
-    expect(board.waiting).toEqual([expect.objectContaining({ kind: 'name-owner', softSensorId: sheet.id })]);
+    const forEngineer = await get(engineer, '/board');
+    expect(forEngineer.waiting).toEqual([
+      expect.objectContaining({ kind: 'name-owner', softSensorId: sheet.id }),
+    ]);
   });
 
   it('replays a draft over a period without touching the recorded estimate', async () => {

@@ -3,6 +3,7 @@ import request from 'supertest';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { persons, sites } from '../../server/db/schema/index.ts';
 import type { Person } from '../../shared/contracts/people.ts';
+import { cookieOf } from '../support/cookie.ts';
 import { lettersTo, tokenIn } from '../support/letters.ts';
 import { type Agent, origin, password, useServer } from '../support/server.ts';
 
@@ -153,6 +154,7 @@ describe('deactivating', () => {
     await post('/password-links', { email: agent.email }).expect(200);
     const token = tokenIn((await lettersTo(server, agent.email))[0]!);
     await agent.get(`/api/v1/sites/${siteId}/areas`).expect(200);
+    const cookie = cookieOf(agent);
     const gone = await change(person, { deactivated: true }).expect(200);
     await agent.get(`/api/v1/sites/${siteId}/areas`).expect(401);
     await post('/session', { email: agent.email, password }).expect(401);
@@ -165,6 +167,8 @@ describe('deactivating', () => {
       .expect(409);
     expect(refused.body.detail).toContain('is deactivated');
     await change(gone.body, {}).expect(200);
+    const revived = await request(server.app).get('/api/v1/self').set('Cookie', cookie).expect(200);
+    expect(revived.body.self).toBeNull();
     await setPassword(token).expect(410);
     await post('/session', { email: agent.email, password }).expect(200);
   });

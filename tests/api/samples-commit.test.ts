@@ -1,4 +1,4 @@
-import { beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { beforeAll, beforeEach, describe, expect, it, vi } from 'vitest';
 import type { SampleImportView } from '../../shared/contracts/sample-import.ts';
 import {
   type Laboratory,
@@ -25,6 +25,30 @@ beforeEach(() => {
 const sql = async <Row extends object>(text: string, values: unknown[] = []): Promise<Row[]> =>
   (await server.context.pool.query<Row>(text, values)).rows;
 const current = async () => (await lab.samples({ perPage: 200 })).rows;
+
+/** Starts both while the site's commits are held up, and lets them go once both wait: they meet for certain. */
+async function bothWaiting<T>(start: () => [PromiseLike<T>, PromiseLike<T>]): Promise<T[]> {
+  const holder = await server.context.pool.connect();
+  try {
+    await holder.query('begin');
+    await holder.query(`select pg_advisory_xact_lock(hashtext('sample-imports'), $1)`, [lab.siteId]);
+    const answers = Promise.all(start());
+    await vi.waitFor(
+      async () => {
+        const [waiting] = await sql<{ n: number }>(
+          `select count(*)::int as n from pg_locks where locktype = 'advisory' and not granted and objid = $1`,
+          [lab.siteId],
+        );
+        expect(waiting!.n).toBe(2);
+      },
+      { timeout: 20_000, interval: 20 },
+    );
+    await holder.query('commit');
+    return await answers;
+  } finally {
+    holder.release();
+  }
+}
 
 /** Rows with numbers that no other test uses: one cell list for each. */
 function fileOf(...rows: string[][]): string {
@@ -135,7 +159,7 @@ describe('a commit', () => {
     const text = fileOf(good);
     const first = await lab.dryRun(text);
     const second = await lab.dryRun(`${text}\nG-1;2026-11-29 10:00;;1483`);
-    const answers = await Promise.all([lab.commit(first), lab.commit(second)]);
+    const answers = await bothWaiting(() => [lab.commit(first), lab.commit(second)]);
     expect(answers.map(({ status }) => status).sort()).toEqual([200, 409]);
     const lost = answers.find(({ status }) => status === 409)!;
     expect(problemOf(lost).code).toBe('stale');
@@ -265,7 +289,7 @@ describe('the refused rows as CSV', () => {
     expect(headers['content-disposition']).toBe('attachment; filename=week-48-refused.csv');
     expect(text.split('\r\n')).toEqual([
       '\ufeffRow;Why refused;id;taken;value',
-      `2;31 November does not exist.;"'=cmd|x";31.11.2026 06:00;-12,5`,
+      `2;31 November does not exist. Write the right date in the file.;"'=cmd|x";31.11.2026 06:00;-12,5`,
       `3;"“1480,5;0” is no number as this file writes them.";"'@A";29.11.2026 06:00;"1480,5;0"`,
       '',
     ]);

@@ -44,19 +44,31 @@ function fileWith(
 
 describe('a row of a dry run', () => {
   it.each([
-    ['no value', { value: '' }, 'No value.'],
-    ['a word instead of a value', { value: 'pend' }, 'No value, only “pend”.'],
+    ['no value', { value: '' }, 'No value. Write it in the file, or leave the row out.'],
+    [
+      'a word instead of a value',
+      { value: 'pend' },
+      'No value, only “pend”. Write it in the file, or leave the row out.',
+    ],
     ['text in the column of numbers', { value: 'broken' }, '“broken” is no number as this file writes them.'],
     ['the other decimal sign', { value: '1481.55' }, '“1481.55” is no number as this file writes them.'],
     ['a formula for a value', { value: '=1+1' }, '“=1+1” is no number as this file writes them.'],
-    ['no time', { taken: '' }, 'No time of taking.'],
+    ['no time', { taken: '' }, 'No time of taking. Write it in the file.'],
     [
       'an unreadable time',
       { taken: 'yesterday' },
       'The time of taking, “yesterday”, can’t be read. One looks like 2026-11-29 06:00.',
     ],
-    ['a day that does not exist', { taken: '31.11.2026 06:00' }, '31 November does not exist.'],
-    ['29 February of no leap year', { taken: '29.02.2025 06:00' }, '29 February 2025 does not exist.'],
+    [
+      'a day that does not exist',
+      { taken: '31.11.2026 06:00' },
+      '31 November does not exist. Write the right date in the file.',
+    ],
+    [
+      '29 February of no leap year',
+      { taken: '29.02.2025 06:00' },
+      '29 February 2025 does not exist. Write the right date in the file.',
+    ],
     [
       'a month that does not exist',
       { taken: '11.30.2026 06:00' },
@@ -112,7 +124,7 @@ describe('a row of a dry run', () => {
       { point: 'K9' },
       'There is no sample point K9 at this site. Add it under Points and methods, or correct the name.',
     ],
-    ['no point', { point: '' }, 'No sample point.'],
+    ['no point', { point: '' }, 'No sample point. Write it in the file, or choose one for the whole file.'],
     [
       'another unit than the soft sensor’s',
       { unit: '°F' },

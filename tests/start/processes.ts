@@ -30,8 +30,13 @@ export interface Running {
   ended: Promise<number | string>;
 }
 
-export function runProgram(args: string[], env: NodeJS.ProcessEnv = {}, options: SpawnOptions = {}): Running {
-  const child = spawn(process.execPath, args, {
+export function runProgram(
+  args: string[],
+  env: NodeJS.ProcessEnv = {},
+  options: SpawnOptions = {},
+  program = process.execPath,
+): Running {
+  const child = spawn(program, args, {
     cwd: root,
     env: { ...plainEnvironment(), ...env },
     stdio: 'pipe',
@@ -58,4 +63,10 @@ export function isAlive(pid: number): boolean {
   } catch {
     return false;
   }
+}
+
+/** Processes that a process started and that still run. */
+export function readChildren(pid: number): number[] {
+  const text = readFileSync(`/proc/${pid}/task/${pid}/children`, 'utf8').trim();
+  return text === '' ? [] : text.split(' ').map(Number);
 }

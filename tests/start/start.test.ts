@@ -3,7 +3,7 @@ import { createServer } from 'node:net';
 import { join } from 'node:path';
 import { expect, onTestFinished, test, vi } from 'vitest';
 import { holdCluster, postmasterPid } from './held-cluster.ts';
-import { isAlive, root, runProgram, temporaryFolder, type Running } from './processes.ts';
+import { isAlive, readChildren, root, runProgram, temporaryFolder, type Running } from './processes.ts';
 
 vi.setConfig({ testTimeout: 60_000 });
 

@@ -125,8 +125,10 @@ export const changes: Partial<Record<EndpointName, Send>> = {
     s.technician
       .put(v1(`/sample-imports/${id}/mapping`))
       .send({ mapping: { ...mapping, samplePointId: s.samplePointId, methodId: null }, version: 1 }),
-  'sampleImports.commit': (s, id) =>
-    s.technician.post(v1(`/sample-imports/${id}/commit`)).send({ version: 2 }),
+  'sampleImports.commit': (s, found) => {
+    const [id, outcome] = found.split(' ');
+    return s.technician.post(v1(`/sample-imports/${id}/commit`)).send({ version: 2, outcome });
+  },
   'sampleImports.undo': (s, id) => s.technician.post(v1(`/sample-imports/${id}/undo`)).send({}),
   'history.upload': (s) =>
     s.engineer
@@ -153,7 +155,11 @@ export const findings: Partial<Record<EndpointName, (scene: Scene) => Promise<st
     return String(body.rows[0].id);
   },
   'sampleImports.dryRun': (s) => newest(s, 'sample-imports'),
-  'sampleImports.commit': (s) => newest(s, 'sample-imports'),
+  async 'sampleImports.commit'(s) {
+    const id = await newest(s, 'sample-imports');
+    const { body } = await s.engineer.get(v1(`/sample-imports/${id}`));
+    return `${id} ${body.outcome}`;
+  },
   'sampleImports.undo': (s) => newest(s, 'sample-imports'),
   'history.start': (s) => newest(s, 'history-imports'),
   async 'history.resume'(s) {

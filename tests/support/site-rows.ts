@@ -4,7 +4,6 @@ import {
   areas,
   auditEntries,
   drafts,
-  files,
   historyImports,
   lifeStates,
   methods,
@@ -23,6 +22,7 @@ import {
   tagSpans,
   units,
 } from '../../server/db/schema/index.ts';
+import { addFile } from './stored-file.ts';
 import type { Model } from '../../shared/contracts/models.ts';
 
 const at = new Date('2026-11-01T06:00:00Z');
@@ -102,16 +102,17 @@ async function addLaboratory(db: Db, mark: string, { siteId, unitId }: Plant, pe
   const point = await only(
     db.insert(samplePoints).values({ siteId, unitId, name: mark }).returning({ id: samplePoints.id }),
   );
-  const file = await only(
-    db
-      .insert(files)
-      .values({ siteId, name: mark, size: 1, sha256: mark, createdAt: at, createdBy: personId })
-      .returning({ id: files.id }),
+  const fileId = await addFile(
+    db,
+    siteId,
+    mark,
+    'sample;taken;value\r\nS-1;2026-11-01T06:30:00Z;301\r\n',
+    personId,
   );
   const sampleImport = await only(
     db
       .insert(sampleImports)
-      .values({ siteId, fileId: file.id, fileName: mark, sha256: mark, createdBy: personId, createdAt: at })
+      .values({ siteId, fileId, fileName: mark, sha256: mark, createdBy: personId, createdAt: at })
       .returning({ id: sampleImports.id }),
   );
   await db.insert(samples).values({
@@ -219,13 +220,16 @@ function sheetOf(mark: string, rows: Plant & Laboratory, estimateTagId: number, 
 }
 
 async function addHistory(db: Db, mark: string, { siteId }: Plant, personId: number) {
+  const text = `time,${mark} TI\r\n2026-11-01T08:00:00Z,303\r\n`;
+  const fileId = await addFile(db, siteId, mark, text, personId);
   const row = await only(
     db
       .insert(historyImports)
       .values({
         siteId,
+        fileId,
         fileName: mark,
-        fileSize: 1,
+        fileSize: text.length,
         sha256: mark,
         createdBy: personId,
         createdAt: at,

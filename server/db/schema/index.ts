@@ -8,4 +8,5 @@ export * from './register.ts';
 export * from './runs.ts';
 export * from './samples.ts';
 export * from './sites.ts';
+export * from './status.ts';
 export * from './tags.ts';

@@ -54,7 +54,7 @@ export async function findLastEntry(db: Queryable, entity: string, entityId: str
     .select({ personName: auditEntries.personName, at: auditEntries.at })
     .from(auditEntries)
     .where(and(eq(auditEntries.entity, entity), eq(auditEntries.entityId, entityId)))
-    .orderBy(desc(auditEntries.at), desc(auditEntries.id))
+    .orderBy(desc(auditEntries.id))
     .limit(1);
   return entry ?? null;
 }

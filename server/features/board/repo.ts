@@ -66,13 +66,14 @@ export async function worstFirst(db: Queryable, filter: BoardFilter): Promise<Bo
   }));
 }
 
-/** What waits for this person: revisions they may decide, and soft sensors without an owner at sites they manage. */
+/** What waits for this person: revisions they may decide, and soft sensors without an owner where they may name one. */
 export async function waitingFor(
   db: Queryable,
-  person: { id: number; managed: number[] },
+  person: { id: number; managed: number[]; edited: number[] },
   filter: BoardFilter,
 ): Promise<Board['waiting']> {
   const managed = sql`${sql.param(person.managed)}::int[]`;
+  const edited = sql`${sql.param(person.edited)}::int[]`;
   const found = await db.execute<Board['waiting'][number] & Record<string, unknown>>(sql`
     select 'decide-revision' as kind, ss.id as "softSensorId", ss.tag_name as "tagName", ss.name,
       r.number as "revisionNumber", p.name as "proposedBy"
@@ -95,7 +96,7 @@ export async function waitingFor(
       where p.deactivated_at is not null and st.in_service
     ) gap
     join soft_sensors ss on ss.site_id = gap.site_id and ss.id = gap.soft_sensor_id
-    where gap.site_id = any(${managed}) and ${siteFilter(filter, 'gap.site_id')}
+    where gap.site_id = any(${edited}) and ${siteFilter(filter, 'gap.site_id')}
     limit 20`);
   return found.rows;
 }

@@ -1,4 +1,5 @@
 import { format, subMonths } from 'date-fns';
+import type { Role } from '../../../shared/contracts/access.ts';
 import type { Board } from '../../../shared/contracts/board.ts';
 import type { Context } from '../../context.ts';
 import type { Actor } from '../../http/request.ts';
@@ -10,11 +11,12 @@ const monthsShown = 12;
 export async function readBoard(context: Context, actor: Actor, filter: BoardFilter): Promise<Board> {
   const now = context.clock();
   const since = format(subMonths(now, monthsShown - 1), 'yyyy-MM');
-  const managed = actor.roles.filter((held) => held.role === 'manager').map((held) => held.siteId);
+  const sitesAs = (role: Role) => actor.roles.filter((held) => held.role === role).map((held) => held.siteId);
+  const person = { id: actor.id, managed: sitesAs('manager'), edited: sitesAs('engineer') };
   const [bySite, rows, waiting] = await Promise.all([
     countBySite(context.db, filter, since),
     worstFirst(context.db, filter),
-    waitingFor(context.db, { id: actor.id, managed }, filter),
+    waitingFor(context.db, person, filter),
   ]);
   const sum = (name: keyof Board['counts']) => bySite.reduce((total, site) => total + site[name], 0);
   return {

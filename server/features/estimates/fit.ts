@@ -9,6 +9,7 @@ import { withClient } from '../../db/client.ts';
 import { drafts } from '../../db/schema/index.ts';
 import { samplesBetween } from '../judging/repo.ts';
 import { carryOut } from '../runs/work.ts';
+import { getSite } from '../sites/repo.ts';
 import type { ComputeContext } from './context.ts';
 import { readInputs } from './inputs.ts';
 import { type SensorRow, findDraft, findSensor, tagNames } from './repo.ts';
@@ -32,7 +33,8 @@ export async function fitDraft(context: ComputeContext, order: FitOrder): Promis
         throw new AppError('stale', 'The draft was changed meanwhile, so nothing was saved. Fit it again.');
       }
       const data = await trainingData(db, client, sensor, draft.model, order);
-      const { fit, model } = fitted(draft.model, data, order);
+      const { zone } = await getSite(db, order.siteId);
+      const { fit, model } = fitted(draft.model, data, order, zone);
       const saved = await db
         .update(drafts)
         .set({ model, fit, version: draft.version + 1, updatedAt: context.clock() })
@@ -106,11 +108,11 @@ function fitted(
   model: RegressionModel,
   data: TrainingData,
   order: FitOrder,
+  zone: string,
 ): { model: RegressionModel; fit: FitSummary } {
   const names = data.names.map(({ name }) => name);
   const found = fitLeastSquares({ columns: data.columns, names, y: data.y, intercept: true });
-  if (!found.ok)
-    throw new AppError('not-enough-data', fitRefusalSentence(found, { from: order.from, to: order.to }));
+  if (!found.ok) throw new AppError('not-enough-data', fitRefusalSentence(found, { ...order, zone }));
   const range = (column: Float64Array) => ({
     low: column.reduce((a, b) => Math.min(a, b), Infinity),
     high: column.reduce((a, b) => Math.max(a, b), -Infinity),

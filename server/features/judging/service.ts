@@ -1,39 +1,32 @@
 import { sql } from 'drizzle-orm';
 import type pg from 'pg';
-import type { ErrorStripPoint, Health, PairedError, Performance } from '../../../shared/contracts/judging.ts';
-import type { Model } from '../../../shared/contracts/models.ts';
-import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
-import { wallClock } from '../../../shared/rules/format.ts';
-import { type CountedError, type HealthInput, allowedOver, biasFigures, biasWindow, healthOf } from '../../../shared/rules/health.ts';
-import { severityOf } from '../../../shared/rules/severity.ts';
+import type { Performance } from '../../../shared/contracts/judging.ts';
+import { biasFigures, biasWindow, healthOf } from '../../../shared/rules/health.ts';
 import { judge } from '../../../shared/rules/judgement.ts';
+import { severityOf } from '../../../shared/rules/severity.ts';
 import { type Db, type Tx, withClient } from '../../db/client.ts';
-import type { ComputeContext } from '../estimates/context.ts';
-import {
-  type RevisionRow,
-  type SensorRow,
-  approvedRevisions,
-  findSensor,
-  methodOf,
-  spansOf,
-} from '../estimates/repo.ts';
 import { recountSite } from '../board/summary.ts';
+import type { ComputeContext } from '../estimates/context.ts';
+import { type SensorRow, approvedRevisions, findSensor, methodOf, spansOf } from '../estimates/repo.ts';
 import { currentOwnership } from '../register/repo.ts';
 import { getSite } from '../sites/repo.ts';
-import { pairSamples } from './pairing.ts';
 import {
-  type PairRow,
-  findStatus,
-  lastPairs,
-  lifeNow,
-  saveHealthDay,
-  saveStatus,
-  standingPairs,
-} from './repo.ts';
+  allowedNow,
+  baselineOf,
+  countedErrors,
+  healthInput,
+  localDay,
+  numberOrNull,
+  rankOf,
+  rmseOf,
+  stripOf,
+  toPairedError,
+} from './figures.ts';
+import { pairSamples } from './pairing.ts';
+import { findStatus, lastPairs, lifeNow, saveHealthDay, saveStatus, standingPairs } from './repo.ts';
 
 /** Pairs read to judge health: enough for the window and for reasons to enter and leave. */
 const pairsForHealth = 150;
-const stripLength = 20;
 
 /** Judges one soft sensor now: pairs what needs it, then figures and health. A job. */
 export async function judgeNow(
@@ -66,7 +59,7 @@ export async function judgeSensor(
   const inForce = revisions.at(-1) ?? null;
   const errors = countedErrors(sensor, pairs);
   const { health, reasons } = healthOf(
-    healthInput(sensor, pairs, errors, inForce, span?.lastAt ?? null, now),
+    healthInput(sensor, pairs, errors, revisions, span?.lastAt ?? null, now),
   );
   const key = { siteId: sensor.siteId, softSensorId: sensor.id };
   const before = await findStatus(tx, sensor.siteId, sensor.id);
@@ -103,89 +96,6 @@ export async function judgeSensor(
     await recountSite(tx, sensor.siteId, now);
 }
 
-/**
- * Errors count from the baseline on: the present revision's own, and for the first one only samples after the period
- * that it was fitted on, since a model is not proven by what it was made from.
- */
-function baselineOf(revisions: readonly RevisionRow[]): Date | null {
-  const inForce = revisions.at(-1);
-  if (!inForce) return null;
-  if (revisions.length > 1) return inForce.effectiveFrom;
-  return inForce.fit ? new Date(inForce.fit.to) : null;
-}
-
-function healthInput(
-  sensor: SensorRow,
-  pairs: readonly PairRow[],
-  errors: readonly CountedError[],
-  inForce: RevisionRow | null,
-  lastEstimateAt: Date | null,
-  now: Date,
-): HealthInput {
-  const window = pairs.slice(-biasWindow);
-  return {
-    nowMs: now.getTime(),
-    errors,
-    uncounted: { count: window.filter((pair) => pair.notCounted !== null).length, of: window.length },
-    lastReferenceMs: pairs.findLast((pair) => pair.notCounted === null)?.takenAt.getTime() ?? null,
-    lastEstimateMs: lastEstimateAt?.getTime() ?? null,
-    promisedReferenceMs: sensor.promisedReferenceMs,
-    historyArrives: sensor.historyArrives,
-    historyEveryMs: sensor.historyEveryMs,
-    residualSd: inForce?.model.residualSd ?? null,
-    allowedSpread: sensor.allowedSpread,
-  };
-}
-
-const allowedAt = (sensor: SensorRow, value: number): number =>
-  allowedErrorAt({ absolute: sensor.allowedErrorAbsolute, percent: sensor.allowedErrorPercent }, value);
-
-function countedErrors(sensor: SensorRow, pairs: readonly PairRow[]): CountedError[] {
-  return pairs
-    .filter((pair) => pair.notCounted === null)
-    .map((pair) => ({
-      takenMs: pair.takenAt.getTime(),
-      reportedMs: pair.reportedAt.getTime(),
-      reference: pair.reference,
-      error: pair.error!,
-      allowed: allowedAt(sensor, pair.reference),
-    }));
-}
-
-function allowedNow(
-  sensor: SensorRow,
-  errors: readonly CountedError[],
-  current: number | null,
-): number | null {
-  if (errors.length > 0) return allowedOver(errors.slice(-biasWindow));
-  return current === null ? sensor.allowedErrorAbsolute : allowedAt(sensor, current);
-}
-
-const stripOf = (errors: readonly CountedError[]): ErrorStripPoint[] =>
-  errors
-    .slice(-stripLength)
-    .map(({ takenMs, error, allowed }) => ({ at: new Date(takenMs).toISOString(), error, allowed }));
-
-/** Worst first on the board: health, then class A before B before C, then the bias against the allowed error. */
-function rankOf(sensor: SensorRow, health: Health, errors: readonly CountedError[]): number {
-  const { bias, allowed } = biasFigures(errors);
-  const share =
-    typeof bias === 'number' && Number(allowed) > 0 ? Math.min(999, Math.abs(bias) / Number(allowed)) : 0;
-  return severityOf(health) * 10_000 + { A: 3000, B: 2000, C: 1000 }[sensor.importanceClass] + share;
-}
-
-const numberOrNull = (value: unknown): number | null => (typeof value === 'number' ? value : null);
-
-const rmseOf = (errors: readonly CountedError[]): number | null =>
-  errors.length === 0
-    ? null
-    : Math.sqrt(errors.reduce((sum, { error }) => sum + error * error, 0) / errors.length);
-
-function localDay(at: Date, zone: string): string {
-  const { year, month, day } = wallClock(at, zone);
-  return `${year}-${String(month).padStart(2, '0')}-${String(day).padStart(2, '0')}`;
-}
-
 /** How wrong the recorded estimate was over a period, from its frozen pairs. */
 export async function performanceOf(
   db: Db,
@@ -200,28 +110,8 @@ export async function performanceOf(
   return {
     from: period.from.toISOString(),
     to: period.to.toISOString(),
-    judgement: judge(errors, { updateFactor, residualSd: residualSdOf(revisions.at(-1)?.model) }),
+    judgement: judge(errors, { updateFactor, residualSd: revisions.at(-1)?.model.residualSd ?? null }),
     errors,
     reproducibility: method?.reproducibility ?? null,
-  };
-}
-
-export const residualSdOf = (model: Model | undefined): number | null => model?.residualSd ?? null;
-
-/** A pair as it is shown; the correction in force would be added here. */
-function toPairedError(sensor: SensorRow, pair: PairRow, sampleNumber: string): PairedError {
-  return {
-    sampleId: pair.sampleId,
-    sampleNumber,
-    takenAt: pair.takenAt.toISOString(),
-    reportedAt: pair.reportedAt.toISOString(),
-    reference: pair.reference,
-    estimate: pair.estimate,
-    estimateSd: pair.estimateSd,
-    error: pair.error,
-    corrected: pair.error,
-    allowed: allowedAt(sensor, pair.reference),
-    notCounted: pair.notCounted,
-    origin: pair.origin,
   };
 }

@@ -1,3 +1,4 @@
+import { isDeepStrictEqual } from 'node:util';
 import { eq } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { Draft, Model, Revision } from '../../../shared/contracts/models.ts';
@@ -68,7 +69,8 @@ export async function saveDraft(
   });
 }
 
-const sameModel = (a: Model, b: Model): boolean => JSON.stringify(a) === JSON.stringify(b);
+/** jsonb keeps no order of keys, so texts of the two can't be compared. */
+const sameModel = (a: Model, b: Model): boolean => isDeepStrictEqual(a, b);
 
 /** Queues a least-squares fit of the draft on the samples of a period. */
 export async function startFit(

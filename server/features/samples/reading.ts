@@ -40,10 +40,19 @@ export async function readText(db: Queryable, row: ImportRow): Promise<{ text: s
 /** Points and soft sensors of a site that a file may name; `everAt` includes points that were archived since. */
 export async function loadRegistry(db: Queryable, siteId: number, everAt: boolean): Promise<SampleRegistry> {
   const points = (await listSamplePoints(db, siteId)).filter((point) => everAt || point.archivedAt === null);
+  const inUse = new Set(
+    (await listMethods(db, siteId)).filter(({ archivedAt }) => !archivedAt).map(({ id }) => id),
+  );
+  const named = (id: number | null) => (id !== null && inUse.has(id) ? id : null);
   return {
     zone: (await getSite(db, siteId)).zone,
     pointsByName: new Map(points.map(({ id, name }) => [name.toLowerCase(), { id, name }])),
-    sensorsAt: new Map(points.map(({ id, goesTo }) => [id, goesTo])),
+    sensorsAt: new Map(
+      points.map(({ id, goesTo }) => [
+        id,
+        goesTo.map((sensor) => ({ ...sensor, methodId: named(sensor.methodId) })),
+      ]),
+    ),
   };
 }
 

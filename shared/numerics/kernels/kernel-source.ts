@@ -20,7 +20,7 @@ const P = (i: number, j: number) => (i >= j ? `p${i}_${j}` : `p${j}_${i}`);
 
 /** The whole file of size n. */
 export function kernelSource(n: number): string {
-  const steady = unrolledReadings.filter((m) => m <= n || m === 1).map((m) => steadyKernel(n, m));
+  const steady = unrolledReadings.filter((m) => m <= n).map((m) => steadyKernel(n, m));
   return [
     '// Written by generate.ts from kernel-source.ts; change those, not this.',
     "import type { FilterWork, SteadyWork } from '../work.ts';",
@@ -121,7 +121,10 @@ function measurementUpdate(n: number): string[] {
   ];
 }
 
-/** x = (A − K C) x + K y + B u with x predicted; v = y − C x; z = H x + G v + F u. */
+/**
+ * x = (A − K C) x + K y + B u with x predicted, in coordinates whose first states are the predicted readings: v = y − x;
+ * z = H x + G v + F u.
+ */
 function steadyKernel(n: number, m: number): string {
   const entries = (name: string, count: number, width: number) =>
     each(count, (i) => `const ${name.toLowerCase()}${Math.floor(i / width)}_${i % width} = ${name}[${i}]!;`);
@@ -131,9 +134,8 @@ function steadyKernel(n: number, m: number): string {
     '// prettier-ignore',
     `export function steady${n}x${m}(work: FilterWork, steady: SteadyWork, from: number, to: number): number {`,
     'const { x, u, y, z, nis, white, p, sums } = work;',
-    'const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;',
+    'const { M, B, K, W, H, G, F, present, absent, stride } = steady;',
     entries('M', n * n, n),
-    entries('C', m * n, n),
     entries('K', m * n, n),
     entries('W', (m * (m + 1)) / 2, 1),
     each(n, (i) => `const h${i} = H[${i}]!;`),
@@ -150,7 +152,7 @@ function steadyKernel(n: number, m: number): string {
       .map((j) => `y${j} !== y${j}`)
       .join(' || ')}) break;`,
     'if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }',
-    each(m, (j) => `const v${j} = y${j} - (${sum(range(n).map((l) => `c${j}_${l} * x${l}`))});`),
+    each(m, (j) => `const v${j} = y${j} - x${j};`),
     `if (scored) { ${each(m, (i) => `const s${i} = ${white(i)};`)} ` +
       `const q = ${sum(range(m).map((i) => `s${i} * s${i}`))}; quad += q; if (wantNis) nis[k] = q; ` +
       `if (wantWhite) { ${each(m, (i) => `white[k * stride + o${i}] = s${i};`)} } }`,

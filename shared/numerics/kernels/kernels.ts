@@ -38,7 +38,7 @@ export function filterKernelFor(n: number): FilterKernel {
   return filters[n] ?? filterGeneral;
 }
 
-/** Fixed-gain kernel for n states and m readings: unrolled up to 8 × 3, loops beyond. */
+/** Fixed-gain kernel for n states and m readings with C = [I 0]: unrolled up to 8 × 3, loops beyond (these take any C). */
 export function steadyKernelFor(n: number, m: number): SteadyKernel {
   return steadies[n]?.[m] ?? steadyGeneral;
 }

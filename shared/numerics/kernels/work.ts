@@ -39,7 +39,10 @@ export type FilterWork = {
  */
 export type FilterKernel = (work: FilterWork, from: number, to: number, predicted: boolean) => void;
 
-/** Work of the fixed-gain filter for one measurement pattern: m present readings out of `stride` in a row. */
+/**
+ * Work of the fixed-gain filter for one measurement pattern: m present readings out of `stride` in a row. The unrolled
+ * kernels want coordinates in which C = [I 0] (fixed-gain.ts); the loops take any.
+ */
 export type SteadyWork = {
   readonly n: number;
   readonly m: number;

@@ -14,11 +14,6 @@ export function coefficientWords(value: number, standardError: number | null, si
   return standardError === null ? number : `${number} ± ${formatNumber(standardError, decimals)}`;
 }
 
-export interface ModelTag {
-  name: string;
-  unit: string;
-}
-
 /** One addend of a model's equation: "+ 0.842 °C per °C × TI-1401". */
 export interface EquationPart {
   sign: '' | '+' | '−';

@@ -20,7 +20,7 @@ export function countedPairs(errors: readonly PairedError[]): Counted[] {
 }
 
 /** Half the whisker of one result: R limits the difference of two, so one stands for R/√2 (ISO 5725-6). */
-export function whiskerOf(reproducibility: number | null): number | null {
+function whiskerOf(reproducibility: number | null): number | null {
   return reproducibility === null ? null : reproducibility / Math.SQRT2;
 }
 

@@ -5,7 +5,7 @@ const names = Object.keys(sheetFields.shape) as SheetField[];
 const same = (a: unknown, b: unknown) => JSON.stringify(a) === JSON.stringify(b);
 
 /** Fields in which two sheets differ. */
-export function changedFields(a: SheetFields, b: SheetFields): SheetField[] {
+function changedFields(a: SheetFields, b: SheetFields): SheetField[] {
   return names.filter((name) => !same(a[name], b[name]));
 }
 

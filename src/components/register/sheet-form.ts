@@ -36,7 +36,7 @@ const hour = 3_600_000;
 const day = 24 * hour;
 
 /** What usually holds for a class (common practice, no source); a person may change each. */
-export const classDefaults: Record<
+const classDefaults: Record<
   ImportanceClass,
   Pick<SheetFields, 'promisedReferenceMs' | 'recalibrationMonths' | 'reviewMonths'>
 > = {

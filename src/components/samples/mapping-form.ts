@@ -65,7 +65,7 @@ export function readMapping(
     errors.samplePointId = 'No column names the sample point. Choose the point for the whole file.';
   if (columns.unit === null && unit === null)
     errors.unit =
-      'No column names the unit. Write the one that the values are in, or leave a pure number blank.';
+      'No column names the unit. Write the one that the values are in, or say that they are pure numbers.';
   if (dateOrder === null) errors.dateOrder = 'Day and month may stand either way round in this file. Choose.';
   if (decimal === null)
     errors.decimal = 'Commas may be decimal signs or part thousands in this file. Choose.';

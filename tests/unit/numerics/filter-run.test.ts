@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { filterSeries } from '../../../shared/numerics/filter-run.ts';
 import { stationaryStart } from '../../../shared/numerics/filter-start.ts';
 import { answered } from '../../reference/expectations.ts';
+import { inputs, noise, sampled } from './furnace-wall.ts';
 import { largestDifference, randomModel, randomSeries } from './random-models.ts';
 import type { RandomModel } from './random-models.ts';
 
@@ -18,6 +19,35 @@ describe('fast filter over long histories', () => {
     expect(held.fixedGainSteps).toBeLessThan(2900);
     expect(largestDifference(held.z, free.z)).toBeLessThan(1e-10);
     expect(largestDifference(held.sd, free.sd)).toBeLessThan(1e-9);
+  });
+
+  it('holds the gain of a slow model no sooner than P has converged to 1e-10', () => {
+    const slow = { ...sampled, ...noise };
+    const N = 4000;
+    const y = Float64Array.from({ length: N }, (_, k) => 130 + 3 * Math.sin(k / 200) + Math.sin(k));
+    const start = {
+      x0: [700, 400, 100],
+      P0: [4e4, 1e4, 1e3].map((p, i) => [0, 1, 2].map((j) => (i === j ? p : 0))),
+    };
+    const series = { u: inputs(N), y };
+    const free = answered(filterSeries(slow, slow, start, series, { switching: false }));
+    const held = answered(filterSeries(slow, slow, start, series));
+    expect(held.fixedGainSteps).toBeGreaterThan(1000);
+    expect(largestDifference(held.z, free.z)).toBeLessThan(1e-9);
+    expect(largestDifference(held.sd, free.sd)).toBeLessThan(1e-9);
+    const atSwitch = N - held.fixedGainSteps;
+    expect(Math.abs(free.sd[atSwitch]! / free.sd[N - 1]! - 1)).toBeLessThan(1e-10);
+    expect(Math.abs(free.sd[atSwitch - 400]! / free.sd[N - 1]! - 1)).toBeGreaterThan(1e-12);
+  });
+
+  it('holds the gain where two sensors read the same thing', () => {
+    const twice = { ...model, C: [model.C[0]!, model.C[0]!] };
+    const series = randomSeries(9, 600, 2, 1, 0.02);
+    const free = answered(filterSeries(twice, twice, twice, series, { switching: false }));
+    const held = answered(filterSeries(twice, twice, twice, series));
+    expect(held.fixedGainSteps).toBeGreaterThan(0);
+    expect(largestDifference(held.z, free.z)).toBeLessThan(1e-10);
+    expect(largestDifference(held.nis, free.nis)).toBeLessThan(1e-9);
   });
 
   it('goes on from the state that it ended with as if it had never stopped', () => {

@@ -78,6 +78,17 @@ describe('noise variances from history', () => {
     expect(result).toMatchObject({ ok: false, reason: 'cannot-tell' });
   });
 
+  it('are refused where a bound keeps the likelihood from its top', () => {
+    const tight = [parameters[0]!, { ...parameters[1]!, start: 0.05, high: 0.08 }];
+    const result = fitNoise(model, nothing, tight, start, history(8, 2000, 0.04, 0.25));
+    expect(result).toMatchObject({
+      ok: false,
+      reason: 'cannot-tell',
+      field: 'parameters[1]',
+      figure: expect.closeTo(0.08, 3),
+    });
+  });
+
   it('want 20 readings each, and sound bounds', () => {
     expect(fitNoise(model, nothing, parameters, start, history(7, 30, 0.1, 0.1))).toMatchObject({
       reason: 'not-enough-data',

@@ -20,6 +20,7 @@ function input(errors: readonly CountedError[], own: Partial<HealthInput> = {}):
     errors,
     uncounted: { count: 0, of: errors.length },
     lastReferenceMs: errors.at(-1)?.takenMs ?? null,
+    baselineMs: null,
     lastEstimateMs: now - 60_000,
     promisedReferenceMs: 2 * day,
     historyArrives: 'live',

@@ -57,9 +57,8 @@ sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; 
 // prettier-ignore
 export function steady1x1(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
 const { x, u, y, z, nis, white, p, sums } = work;
-const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const { M, B, K, W, H, G, F, present, absent, stride } = steady;
 const m0_0 = M[0]!;
-const c0_0 = C[0]!;
 const k0_0 = K[0]!;
 const w0_0 = W[0]!;
 const h0 = H[0]!;
@@ -73,7 +72,7 @@ for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!;
 if (y0 !== y0) break;
 if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
-const v0 = y0 - (c0_0 * x0);
+const v0 = y0 - x0;
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0) + (g0 * v0);
 let f0 = (m0_0 * x0) + (k0_0 * y0);

@@ -57,9 +57,8 @@ sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; 
 // prettier-ignore
 export function steady2x1(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
 const { x, u, y, z, nis, white, p, sums } = work;
-const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const { M, B, K, W, H, G, F, present, absent, stride } = steady;
 const m0_0 = M[0]!; const m0_1 = M[1]!; const m1_0 = M[2]!; const m1_1 = M[3]!;
-const c0_0 = C[0]!; const c0_1 = C[1]!;
 const k0_0 = K[0]!; const k0_1 = K[1]!;
 const w0_0 = W[0]!;
 const h0 = H[0]!; const h1 = H[1]!;
@@ -73,7 +72,7 @@ for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!;
 if (y0 !== y0) break;
 if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
-const v0 = y0 - (c0_0 * x0 + c0_1 * x1);
+const v0 = y0 - x0;
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0 + h1 * x1) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1) + (k0_1 * y0);
@@ -93,9 +92,8 @@ return k;
 // prettier-ignore
 export function steady2x2(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
 const { x, u, y, z, nis, white, p, sums } = work;
-const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const { M, B, K, W, H, G, F, present, absent, stride } = steady;
 const m0_0 = M[0]!; const m0_1 = M[1]!; const m1_0 = M[2]!; const m1_1 = M[3]!;
-const c0_0 = C[0]!; const c0_1 = C[1]!; const c1_0 = C[2]!; const c1_1 = C[3]!;
 const k0_0 = K[0]!; const k0_1 = K[1]!; const k1_0 = K[2]!; const k1_1 = K[3]!;
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
 const h0 = H[0]!; const h1 = H[1]!;
@@ -109,7 +107,7 @@ for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!;
 if (y0 !== y0 || y1 !== y1) break;
 if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
-const v0 = y0 - (c0_0 * x0 + c0_1 * x1); const v1 = y1 - (c1_0 * x0 + c1_1 * x1);
+const v0 = y0 - x0; const v1 = y1 - x1;
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
 let e = (h0 * x0 + h1 * x1) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1) + (k0_1 * y0 + k1_1 * y1);

@@ -57,9 +57,8 @@ sums[0]! += readings; sums[1]! += logDet + Math.log(product); sums[2]! += quad; 
 // prettier-ignore
 export function steady4x1(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
 const { x, u, y, z, nis, white, p, sums } = work;
-const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const { M, B, K, W, H, G, F, present, absent, stride } = steady;
 const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m1_0 = M[4]!; const m1_1 = M[5]!; const m1_2 = M[6]!; const m1_3 = M[7]!; const m2_0 = M[8]!; const m2_1 = M[9]!; const m2_2 = M[10]!; const m2_3 = M[11]!; const m3_0 = M[12]!; const m3_1 = M[13]!; const m3_2 = M[14]!; const m3_3 = M[15]!;
-const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!;
 const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!;
 const w0_0 = W[0]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
@@ -73,7 +72,7 @@ for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!;
 if (y0 !== y0) break;
 if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
-const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3);
+const v0 = y0 - x0;
 if (scored) { const s0 = w0_0 * v0; const q = s0 * s0; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0);
@@ -93,9 +92,8 @@ return k;
 // prettier-ignore
 export function steady4x2(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
 const { x, u, y, z, nis, white, p, sums } = work;
-const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const { M, B, K, W, H, G, F, present, absent, stride } = steady;
 const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m1_0 = M[4]!; const m1_1 = M[5]!; const m1_2 = M[6]!; const m1_3 = M[7]!; const m2_0 = M[8]!; const m2_1 = M[9]!; const m2_2 = M[10]!; const m2_3 = M[11]!; const m3_0 = M[12]!; const m3_1 = M[13]!; const m3_2 = M[14]!; const m3_3 = M[15]!;
-const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c1_0 = C[4]!; const c1_1 = C[5]!; const c1_2 = C[6]!; const c1_3 = C[7]!;
 const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k1_0 = K[4]!; const k1_1 = K[5]!; const k1_2 = K[6]!; const k1_3 = K[7]!;
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
@@ -109,7 +107,7 @@ for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!;
 if (y0 !== y0 || y1 !== y1) break;
 if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
-const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3); const v1 = y1 - (c1_0 * x0 + c1_1 * x1 + c1_2 * x2 + c1_3 * x3);
+const v0 = y0 - x0; const v1 = y1 - x1;
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const q = s0 * s0 + s1 * s1; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0 + g1 * v1);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0 + k1_0 * y1); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0 + k1_1 * y1); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0 + k1_2 * y1); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0 + k1_3 * y1);
@@ -129,9 +127,8 @@ return k;
 // prettier-ignore
 export function steady4x3(work: FilterWork, steady: SteadyWork, from: number, to: number): number {
 const { x, u, y, z, nis, white, p, sums } = work;
-const { M, B, K, C, W, H, G, F, present, absent, stride } = steady;
+const { M, B, K, W, H, G, F, present, absent, stride } = steady;
 const m0_0 = M[0]!; const m0_1 = M[1]!; const m0_2 = M[2]!; const m0_3 = M[3]!; const m1_0 = M[4]!; const m1_1 = M[5]!; const m1_2 = M[6]!; const m1_3 = M[7]!; const m2_0 = M[8]!; const m2_1 = M[9]!; const m2_2 = M[10]!; const m2_3 = M[11]!; const m3_0 = M[12]!; const m3_1 = M[13]!; const m3_2 = M[14]!; const m3_3 = M[15]!;
-const c0_0 = C[0]!; const c0_1 = C[1]!; const c0_2 = C[2]!; const c0_3 = C[3]!; const c1_0 = C[4]!; const c1_1 = C[5]!; const c1_2 = C[6]!; const c1_3 = C[7]!; const c2_0 = C[8]!; const c2_1 = C[9]!; const c2_2 = C[10]!; const c2_3 = C[11]!;
 const k0_0 = K[0]!; const k0_1 = K[1]!; const k0_2 = K[2]!; const k0_3 = K[3]!; const k1_0 = K[4]!; const k1_1 = K[5]!; const k1_2 = K[6]!; const k1_3 = K[7]!; const k2_0 = K[8]!; const k2_1 = K[9]!; const k2_2 = K[10]!; const k2_3 = K[11]!;
 const w0_0 = W[0]!; const w1_0 = W[1]!; const w2_0 = W[2]!; const w3_0 = W[3]!; const w4_0 = W[4]!; const w5_0 = W[5]!;
 const h0 = H[0]!; const h1 = H[1]!; const h2 = H[2]!; const h3 = H[3]!;
@@ -145,7 +142,7 @@ for (; k < to; k++, at += stride) {
 const y0 = y[at + o0]!; const y1 = y[at + o1]!; const y2 = y[at + o2]!;
 if (y0 !== y0 || y1 !== y1 || y2 !== y2) break;
 if (missing > 0) { let i = 0; while (i < missing && y[at + absent[i]!] !== y[at + absent[i]!]) i++; if (i < missing) break; }
-const v0 = y0 - (c0_0 * x0 + c0_1 * x1 + c0_2 * x2 + c0_3 * x3); const v1 = y1 - (c1_0 * x0 + c1_1 * x1 + c1_2 * x2 + c1_3 * x3); const v2 = y2 - (c2_0 * x0 + c2_1 * x1 + c2_2 * x2 + c2_3 * x3);
+const v0 = y0 - x0; const v1 = y1 - x1; const v2 = y2 - x2;
 if (scored) { const s0 = w0_0 * v0; const s1 = w1_0 * v0 + w2_0 * v1; const s2 = w3_0 * v0 + w4_0 * v1 + w5_0 * v2; const q = s0 * s0 + s1 * s1 + s2 * s2; quad += q; if (wantNis) nis[k] = q; if (wantWhite) { white[k * stride + o0] = s0; white[k * stride + o1] = s1; white[k * stride + o2] = s2; } }
 let e = (h0 * x0 + h1 * x1 + h2 * x2 + h3 * x3) + (g0 * v0 + g1 * v1 + g2 * v2);
 let f0 = (m0_0 * x0 + m0_1 * x1 + m0_2 * x2 + m0_3 * x3) + (k0_0 * y0 + k1_0 * y1 + k2_0 * y2); let f1 = (m1_0 * x0 + m1_1 * x1 + m1_2 * x2 + m1_3 * x3) + (k0_1 * y0 + k1_1 * y1 + k2_1 * y2); let f2 = (m2_0 * x0 + m2_1 * x1 + m2_2 * x2 + m2_3 * x3) + (k0_2 * y0 + k1_2 * y1 + k2_2 * y2); let f3 = (m3_0 * x0 + m3_1 * x1 + m3_2 * x2 + m3_3 * x3) + (k0_3 * y0 + k1_3 * y1 + k2_3 * y2);
