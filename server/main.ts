@@ -1,12 +1,12 @@
 import { once } from 'node:events';
 import { createServer } from 'node:http';
 import path from 'node:path';
-import pino from 'pino';
 import { createApp } from './app.ts';
 import type { Context } from './context.ts';
 import { createDb, createPool } from './db/client.ts';
 import { migrate } from './db/migrate.ts';
 import { readConfig } from './env.ts';
+import { createLog } from './log.ts';
 import { createComputePool } from './jobs/compute-pool.ts';
 import { startWorkers } from './jobs/worker.ts';
 import { startLocalMailServer } from './mail/local-server.ts';
@@ -16,7 +16,7 @@ const say = (line: string) => process.stdout.write(`${line}\n`);
 
 async function main(): Promise<void> {
   const config = readConfig(process.env);
-  const log = pino({ level: config.logLevel });
+  const log = createLog(config.logLevel);
   await migrate(config.databaseDirectUrl);
   const pool = createPool(config.databaseUrl, log);
   const compute = createComputePool(config);

@@ -1,6 +1,6 @@
 import { workerData } from 'node:worker_threads';
-import pino from 'pino';
 import { createDb, createPool } from '../db/client.ts';
+import { createLog } from '../log.ts';
 import { computeEstimate } from '../features/estimates/compute.ts';
 import type { ComputeContext } from '../features/estimates/context.ts';
 import { fitDraft } from '../features/estimates/fit.ts';
@@ -16,7 +16,7 @@ interface Order {
 }
 
 const { databaseUrl, logLevel } = workerData as { databaseUrl: string; logLevel: string };
-const log = pino({ level: logLevel });
+const log = createLog(logLevel);
 const pool = createPool(databaseUrl, log, 2);
 const db = createDb(pool);
 

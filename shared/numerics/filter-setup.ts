@@ -119,6 +119,6 @@ export class FilterSetup {
 }
 
 /** Numbers of the readings present in a pattern. */
-export function presentIn(pattern: Pattern, m: number): number[] {
+function presentIn(pattern: Pattern, m: number): number[] {
   return Array.from({ length: m }, (_, j) => j).filter((j) => (pattern >> j) & 1);
 }

@@ -1,12 +1,12 @@
 import { randomUUID } from 'node:crypto';
 import { type RequestListener, createServer } from 'node:http';
 import pg from 'pg';
-import pino from 'pino';
 import { createApp } from '../../server/app.ts';
 import type { Context } from '../../server/context.ts';
 import { createDb, createPool } from '../../server/db/client.ts';
 import { migrate } from '../../server/db/migrate.ts';
 import { readConfig } from '../../server/env.ts';
+import { createLog } from '../../server/log.ts';
 import { createComputePool } from '../../server/jobs/compute-pool.ts';
 
 export interface BenchServer {
@@ -27,7 +27,7 @@ export async function startBenchServer(
   const url = new URL(adminUrl);
   url.pathname = `/${name}`;
   await migrate(url.toString());
-  const log = pino({ level: 'warn' });
+  const log = createLog('silent');
   const config = readConfig({ DATABASE_URL: url.toString(), SMTP_URL: 'smtp://127.0.0.1:1' });
   const pool = createPool(config.databaseUrl, log);
   const compute = createComputePool(config);

@@ -1,10 +1,10 @@
 import { randomUUID } from 'node:crypto';
 import pg from 'pg';
-import pino from 'pino';
 import { afterAll, beforeAll, inject } from 'vitest';
 import type { Context } from '../../server/context.ts';
 import { createDb, createPool } from '../../server/db/client.ts';
 import { readConfig } from '../../server/env.ts';
+import { createLog } from '../../server/log.ts';
 import { createComputePool } from '../../server/jobs/compute-pool.ts';
 import { startLocalMailServer } from '../../server/mail/local-server.ts';
 import { databaseUrl } from './database-url.ts';
@@ -20,7 +20,7 @@ export function useTestContext(clock: () => Date, ready: (context: Context) => v
     endings.unshift(() => admin.end());
     await admin.query(`create database ${name} template ${inject('templateDatabase')}`);
     endings.unshift(() => admin.query(`drop database if exists ${name} with (force)`));
-    const log = pino({ level: process.env.LOG_LEVEL ?? 'silent' });
+    const log = createLog(process.env.LOG_LEVEL ?? 'silent');
     const config = readConfig({ DATABASE_URL: databaseUrl(name), NODE_ENV: 'test' });
     const pool = createPool(config.databaseUrl, log, 6);
     endings.unshift(() => pool.end());
