@@ -1,6 +1,7 @@
 import { boardFigures } from './board.ts';
 import { clientFigures } from './client-size.ts';
 import type { Figure } from './figure.ts';
+import { judgingFigures } from './judging.ts';
 import { filterFigures } from './filters.ts';
 import { historyFigures } from './history-import.ts';
 import { replayFigures } from './replay.ts';
@@ -10,6 +11,7 @@ const suites: Record<string, () => Promise<Figure[]>> = {
   board: () => boardFigures(databaseUrl()),
   replay: () => replayFigures(databaseUrl()),
   client: clientFigures,
+  judging: judgingFigures,
   filters: filterFigures,
 };
 
