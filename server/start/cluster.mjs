@@ -1,6 +1,15 @@
 import { randomBytes } from 'node:crypto';
-import { chmodSync, chownSync, existsSync, readFileSync, renameSync, rmSync, writeFileSync } from 'node:fs';
-import { join } from 'node:path';
+import {
+  chmodSync,
+  chownSync,
+  existsSync,
+  readdirSync,
+  readFileSync,
+  renameSync,
+  rmSync,
+  writeFileSync,
+} from 'node:fs';
+import { basename, join } from 'node:path';
 import { claim, giveUp } from './claims.mjs';
 import { makeFolder } from './data-folder.mjs';
 import { atEnd } from './ending.mjs';
@@ -36,10 +45,9 @@ async function makeCluster(cluster, settings) {
   say(`Making a database in ${cluster.folder} …`);
   makeFolder(cluster.folder);
   closeToOthers(cluster.folder, cluster.user, 0o700);
-  const unfinished = `${cluster.data}.unfinished`;
-  // An initdb outlives the killed start that began it, and goes on writing while its folder is removed.
-  await clearLeftovers(unfinished);
-  rmSync(unfinished, { recursive: true, force: true, maxRetries: 20, retryDelay: 100 });
+  await removeUnfinished(cluster);
+  // A name of its own: an initdb outlives the killed start that began it, and removes its folder when it fails.
+  const unfinished = `${cluster.data}.unfinished-${randomBytes(4).toString('hex')}`;
   writeFileSync(cluster.passwordFile, randomBytes(18).toString('base64url'), { mode: 0o600 });
   closeToOthers(cluster.passwordFile, cluster.user, 0o600);
   const hasty = settings.fsync === 'off';
@@ -50,6 +58,18 @@ async function makeCluster(cluster, settings) {
   const input = `create database ${owner}\n`;
   needSuccess(await runServerProgram(cluster, 'postgres', single.flat(), { input }), 'make the database');
   renameSync(unfinished, cluster.data);
+}
+
+async function removeUnfinished({ data, folder }) {
+  const prefix = `${basename(data)}.unfinished`;
+  for (const name of readdirSync(folder).filter((found) => found.startsWith(prefix))) {
+    await clearLeftovers(join(folder, name));
+    try {
+      rmSync(join(folder, name), { recursive: true, force: true, maxRetries: 5, retryDelay: 100 });
+    } catch {
+      // An initdb that still writes there removes it itself; nothing of it is in our way.
+    }
+  }
 }
 
 // Everything is given at each start, nothing in postgresql.conf: the port is another each time, there is no Unix socket

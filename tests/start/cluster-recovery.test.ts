@@ -63,10 +63,13 @@ test('a stale postmaster.pid that names a living process of the same user does n
 test('an interrupted making of the cluster is begun again', async () => {
   const folder = temporaryFolder();
   const interrupted = startHolding(folder);
-  await vi.waitFor(() => expect(readdirSync(join(folder, 'postgres'))).toContain('data.unfinished'), {
-    timeout: 5000,
-    interval: 5,
-  });
+  await vi.waitFor(
+    () => expect(readdirSync(join(folder, 'postgres')).join(' ')).toContain('data.unfinished'),
+    {
+      timeout: 5000,
+      interval: 5,
+    },
+  );
   interrupted.child.kill('SIGKILL');
   await interrupted.ended;
   const next = await holdCluster(folder);
