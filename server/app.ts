@@ -8,6 +8,7 @@ import { createSessions } from './auth/sessions.ts';
 import type { Context } from './context.ts';
 import { auditRoutes } from './features/audit/routes.ts';
 import { boardRoutes } from './features/board/routes.ts';
+import { calibrationRoutes } from './features/calibrations/routes.ts';
 import { judgingRoutes } from './features/judging/routes.ts';
 import { historyRoutes } from './features/history/routes.ts';
 import { mailRoutes } from './features/mail/routes.ts';
@@ -73,6 +74,7 @@ const features = [
   runRoutes,
   registerRoutes,
   judgingRoutes,
+  calibrationRoutes,
   boardRoutes,
   mailRoutes,
   auditRoutes,

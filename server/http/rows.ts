@@ -4,6 +4,10 @@ import { type AccessTarget, targetParam } from '../../shared/contracts/access.ts
 import type { Queryable } from '../db/client.ts';
 import {
   areas,
+  calibrations,
+  duties,
+  events,
+  handovers,
   historyImports,
   methods,
   replays,
@@ -30,6 +34,10 @@ const tables = {
   samplePoint: samplePoints,
   softSensor: softSensors,
   revision: revisions,
+  calibration: calibrations,
+  event: events,
+  duty: duties,
+  handover: handovers,
   replay: replays,
   sampleImport: sampleImports,
   historyImport: historyImports,

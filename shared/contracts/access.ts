@@ -18,6 +18,10 @@ export const actions = [
   'softSensor.replay',
   'softSensor.approve',
   'softSensor.suspend',
+  'softSensor.recalibrate',
+  'softSensor.nameOwner',
+  'duty.attend',
+  'events.record',
 ] as const;
 export type Action = (typeof actions)[number];
 
@@ -36,6 +40,10 @@ export type AccessTarget =
   | 'samplePoint'
   | 'softSensor'
   | 'revision'
+  | 'calibration'
+  | 'event'
+  | 'duty'
+  | 'handover'
   | 'replay'
   | 'sampleImport'
   | 'historyImport'
@@ -53,6 +61,10 @@ export const targetParam: Record<Exclude<AccessTarget, 'company' | 'sites'>, str
   samplePoint: 'samplePointId',
   softSensor: 'softSensorId',
   revision: 'revisionId',
+  calibration: 'calibrationId',
+  event: 'eventId',
+  duty: 'dutyId',
+  handover: 'handoverId',
   replay: 'replayId',
   sampleImport: 'sampleImportId',
   historyImport: 'historyImportId',

@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { endpoint, idNumber, idText, isoInstant } from './endpoint.ts';
+import { endpoint, idNumber, idText, isoInstant, nothing } from './endpoint.ts';
 import { errorStripPoint, health, healthReason } from './judging.ts';
 import { consumer } from './register.ts';
 
@@ -15,6 +15,10 @@ export const boardRow = z.object({
   importanceClass: z.enum(['A', 'B', 'C']),
   consumers: z.array(consumer),
   health,
+  /** What it was before, and since when it is what it is. */
+  healthBefore: health.nullable(),
+  healthSince: isoInstant,
+  stoppedSince: isoInstant.nullable(),
   reasons: z.array(healthReason),
   bias: z.number().nullable(),
   biasLow: z.number().nullable(),
@@ -24,6 +28,10 @@ export const boardRow = z.object({
   lastErrors: z.array(errorStripPoint),
   lastReferenceAt: isoInstant.nullable(),
   owner: z.string().nullable(),
+  recalibratedAt: isoInstant.nullable(),
+  referencesSince: z.number().int(),
+  /** May be confirmed as found by this person without looking at its evidence one by one. */
+  confirmable: z.boolean(),
 });
 export type BoardRow = z.infer<typeof boardRow>;
 
@@ -35,6 +43,7 @@ const counts = z.object({
   unproven: z.number().int(),
   unfitInClosedLoop: z.number().int(),
   notInService: z.number().int(),
+  stopped: z.number().int(),
 });
 
 /** Unfit and unproven of one site at the end of a month ("2026-11"). */
@@ -55,14 +64,28 @@ export const board = z.object({
   rows: z.array(boardRow),
   waiting: z.array(
     z.object({
-      kind: z.enum(['decide-revision', 'name-owner']),
+      kind: z.enum([
+        'decide-revision',
+        'decide-calibration',
+        'enter-calibration',
+        'answer-handover',
+        'name-owner',
+        'recalibration-late',
+        'review-late',
+      ]),
       softSensorId: idNumber,
       tagName: z.string(),
       name: z.string(),
-      revisionNumber: z.number().int().nullable(),
-      proposedBy: z.string().nullable(),
+      /** Revision, calibration, handover or duty. */
+      subjectId: idNumber,
+      number: z.number().int().nullable(),
+      by: z.string().nullable(),
+      /** When it was proposed or approved; for a late duty the day it was due. */
+      since: z.string(),
     }),
   ),
+  /** When this person looked last; null at the first time. "Since you last looked" counts from here. */
+  lookedAt: isoInstant.nullable(),
   at: isoInstant,
 });
 export type Board = z.infer<typeof board>;
@@ -76,16 +99,40 @@ export const boards = {
     access: { may: 'site.view', on: 'sites' },
     query: z.object({
       siteId: idText.optional(),
-      health: z.enum(['all', 'not-fit', 'fit']).default('not-fit'),
+      health: z.enum(['all', 'not-fit', 'fit', 'stopped', 'confirmable']).default('not-fit'),
+      /** Mine: those that the person owns or is deputy of. */
+      whose: z.enum(['all', 'mine']).default('all'),
+      /** Only those whose health changed, or that were recalibrated, since this instant. */
+      changedSince: isoInstant.optional(),
       limit: z.coerce.number().int().min(1).max(500).default(20),
     }),
     reply: board,
     example: {
-      counts: { total: 52, fit: 41, watch: 6, unfit: 3, unproven: 2, unfitInClosedLoop: 1, notInService: 0 },
+      counts: {
+        total: 52,
+        fit: 41,
+        watch: 6,
+        unfit: 3,
+        unproven: 2,
+        unfitInClosedLoop: 1,
+        notInService: 0,
+        stopped: 1,
+      },
       sites: [],
       rows: [],
       waiting: [],
+      lookedAt: null,
       at: '2026-12-01T06:00:00.000Z',
     },
+  }),
+  'board.looked': endpoint({
+    method: 'POST',
+    path: '/board/look',
+    kind: 'json',
+    summary: 'Say that the person looked at the board now; looks within an hour are one',
+    access: 'self',
+    body: nothing,
+    reply: z.object({ lookedAt: isoInstant.nullable() }),
+    example: { lookedAt: '2026-11-30T06:00:00.000Z' },
   }),
 };

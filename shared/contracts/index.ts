@@ -1,10 +1,14 @@
 import { audit } from './audit.ts';
 import { boards } from './board.ts';
+import { calibrations } from './calibrations.ts';
+import { duties } from './duties.ts';
 import type { EndpointSpec } from './endpoint.ts';
+import { events } from './events.ts';
 import { history } from './history.ts';
 import { judging } from './judging.ts';
 import { mail } from './mail.ts';
 import { models } from './models.ts';
+import { ownership } from './ownership.ts';
 import { people } from './people.ts';
 import { register } from './register.ts';
 import { runs } from './runs.ts';
@@ -23,6 +27,10 @@ export const endpoints = {
   ...register,
   ...models,
   ...judging,
+  ...calibrations,
+  ...events,
+  ...duties,
+  ...ownership,
   ...boards,
   ...mail,
   ...audit,

@@ -24,6 +24,8 @@ export const localMail = z.object({
   to: z.string(),
   subject: z.string(),
   text: z.string(),
+  /** null where the message is plain text only. */
+  html: z.string().nullable(),
 });
 export type LocalMail = z.infer<typeof localMail>;
 
@@ -53,6 +55,7 @@ export const mail = {
       to: 'tove.halbrook@tarnby.example',
       subject: 'Set your password for Cupel',
       text: 'Hello Tove',
+      html: '<p>Hello Tove</p>',
     },
   }),
 };

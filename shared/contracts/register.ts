@@ -1,6 +1,8 @@
 import { z } from 'zod';
 import { endpoint, idNumber, ids, idText, isoInstant, longText, shortText, version } from './endpoint.ts';
+import { interval, isoDate } from './interval.ts';
 import { health, healthReason, errorStripPoint } from './judging.ts';
+import { calibration, correction } from './calibrations.ts';
 import { draft, positive, revision } from './models.ts';
 import { exampleSheet } from './register-examples.ts';
 
@@ -43,8 +45,8 @@ export const sheetFields = z.object({
   historyEveryMs: positive('The interval of history'),
   correctionMode: z.enum(['monitor', 'propose', 'automatic']),
   updateFactor: z.number().gt(0, 'The factor must be above 0.').max(1, 'The factor can’t be above 1.'),
-  recalibrationMonths: z.number().int().min(1, 'At least one month.').max(120),
-  reviewMonths: z.number().int().min(1, 'At least one month.').max(120),
+  recalibrationInterval: interval,
+  reviewInterval: interval,
   fallback: longText,
   limitations: longText,
   ownerId: idNumber.nullable(),
@@ -109,6 +111,8 @@ export const status = z.object({
   currentValue: z.number().nullable(),
   currentSd: z.number().nullable(),
   judgedAt: isoInstant,
+  recalibratedAt: isoInstant.nullable(),
+  referencesSince: z.number().int(),
 });
 export type Status = z.infer<typeof status>;
 
@@ -127,12 +131,25 @@ export const sheet = z.object({
   fields: sheetFields,
   life: lifeState,
   lifeSince: isoInstant,
+  /** Why it is in that life state, in the words of who put it there. */
+  lifeReason: z.string(),
+  /** Since when its unit, or it alone, is stopped. */
+  stoppedSince: isoInstant.nullable(),
   owner: personRef,
   deputy: personRef,
   approver: personRef,
   revisionInForce: revision.nullable(),
   waiting: revision.nullable(),
   draft: draft.nullable(),
+  /** The correction in force with the calibration that put it there; null where the raw estimate stands. */
+  correction: correction
+    .extend({ calibrationId: idNumber, since: isoInstant, approvedBy: z.string() })
+    .nullable(),
+  waitingCalibration: calibration.nullable(),
+  /** Approved for an external estimate, but nobody said yet that it was entered in the control system. */
+  calibrationToEnter: calibration.nullable(),
+  lastCalibration: calibration.nullable(),
+  dueOn: z.object({ recalibration: isoDate.nullable(), review: isoDate.nullable() }),
   inputs: z.array(z.object({ tagId: idNumber, name: z.string(), description: z.string(), unit: z.string() })),
   status: status.nullable(),
   working: z.boolean(),
@@ -193,6 +210,17 @@ export const register = {
     body: z.object({ reason: z.string().trim().max(400) }),
     reply: sheet,
     example: { ...exampleSheet, life: 'suspended' },
+  }),
+  'life.reason': endpoint({
+    method: 'PUT',
+    path: '/soft-sensors/:softSensorId/suspension',
+    kind: 'json',
+    summary: 'Say afterwards why a soft sensor was suspended',
+    access: { may: 'softSensor.suspend', on: 'softSensor' },
+    params: ids('softSensorId'),
+    body: z.object({ reason: shortText('a reason', 400) }),
+    reply: sheet,
+    example: { ...exampleSheet, life: 'suspended', lifeReason: 'Purge blocked' },
   }),
   'life.putBack': endpoint({
     method: 'DELETE',

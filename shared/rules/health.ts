@@ -1,3 +1,4 @@
+import type { Baseline } from '../contracts/calibrations.ts';
 import type { Health, HealthReason } from '../contracts/judging.ts';
 import { biasWithInterval } from '../numerics/bias.ts';
 import { holdLast } from '../numerics/hold-last.ts';
@@ -21,8 +22,11 @@ export interface HealthInput {
   /** Accepted references of the last window that did not count, and all of them. */
   uncounted: { count: number; of: number };
   lastReferenceMs: number | null;
-  /** Since when errors count: the present model's approval, or the end of what it was fitted on; null: always. */
+  /** Since when errors count, and why from then: a revision, a correction, an event; null: always. */
+  baseline: Baseline['code'];
   baselineMs: number | null;
+  /** When the unit last started again; null where it never stood. */
+  runningSinceMs: number | null;
   lastEstimateMs: number | null;
   promisedReferenceMs: number;
   historyArrives: 'live' | 'uploaded';
@@ -62,11 +66,16 @@ function proofReasons(input: HealthInput): HealthReason[] {
   const reasons: HealthReason[] = [];
   const say = (code: HealthReason['code'], figures: HealthReason['figures']) =>
     reasons.push({ code, health: 'unproven', figures });
-  if (input.lastEstimateMs === null || input.nowMs - input.lastEstimateMs > patience(input)) {
+  const heardMs = Math.max(input.lastEstimateMs ?? 0, input.runningSinceMs ?? 0);
+  if (input.lastEstimateMs === null || input.nowMs - heardMs > patience(input)) {
     say('no-inputs', { sinceMs: input.lastEstimateMs, nowMs: input.nowMs });
   }
-  if (input.lastReferenceMs === null) say('no-reference', { sinceMs: input.baselineMs });
-  else if (input.nowMs - input.lastReferenceMs > input.promisedReferenceMs) {
+  const { baseline, baselineMs } = input;
+  if (input.lastReferenceMs === null) say('no-reference', { sinceMs: baselineMs, baseline });
+  else if (
+    input.nowMs - Math.max(input.lastReferenceMs, input.runningSinceMs ?? 0) >
+    input.promisedReferenceMs
+  ) {
     say('reference-overdue', {
       ageMs: input.nowMs - input.lastReferenceMs,
       promisedMs: input.promisedReferenceMs,
@@ -74,7 +83,7 @@ function proofReasons(input: HealthInput): HealthReason[] {
   }
   const recent = input.errors.slice(-biasWindow);
   if (input.lastReferenceMs !== null && recent.length < fewestErrors) {
-    say('too-few-errors', { counted: recent.length, needed: fewestErrors });
+    say('too-few-errors', { counted: recent.length, needed: fewestErrors, sinceMs: baselineMs, baseline });
   }
   return reasons;
 }
@@ -162,7 +171,7 @@ function holdingReason(window: readonly CountedError[], rmse: number): HealthRea
 }
 
 /** Allowed error over a window: the median, so that one odd value moves nothing. */
-export function allowedOver(window: readonly CountedError[]): number {
+export function allowedOver(window: readonly { allowed: number }[]): number {
   const sorted = window.map(({ allowed }) => allowed).sort((a, b) => a - b);
   return sorted[Math.floor(sorted.length / 2)] ?? 0;
 }

@@ -21,9 +21,13 @@ export function judge(
   options: { updateFactor: number; residualSd: number | null },
 ): Judgement {
   const counted = pairs.filter((pair) => pair.notCounted === null && pair.error !== null);
-  const errors = counted.map((pair) => pair.error!);
+  const errors = counted.map((pair) => pair.corrected ?? pair.error!);
   const bias = biasWithInterval(errors);
-  const exponential = exponentialUpdate(errors, options.updateFactor);
+  // What per-sample updating would have given starts from the raw estimate, not from corrections that people made.
+  const exponential = exponentialUpdate(
+    counted.map((pair) => pair.error!),
+    options.updateFactor,
+  );
   return {
     bias: bias.ok ? bias : { ok: false, reason: bias.reason, n: errors.length },
     holdLast: heldLast(counted),
@@ -54,7 +58,9 @@ function ewmaOf(errors: readonly number[], sd: number | null): Judgement['ewma']
 function coverageOf(counted: readonly PairedError[]): Judgement['coverage'] {
   const banded = counted.filter((pair) => pair.estimateSd !== null);
   if (banded.length === 0) return null;
-  const held = banded.filter((pair) => Math.abs(pair.error!) <= bandFactor * pair.estimateSd!).length;
+  const held = banded.filter(
+    (pair) => Math.abs(pair.corrected ?? pair.error!) <= bandFactor * pair.estimateSd!,
+  ).length;
   return { held, of: banded.length };
 }
 

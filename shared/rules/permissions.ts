@@ -19,6 +19,10 @@ const matrix: Record<Action, readonly Holder[]> = {
   // A named approver needs a role at the site that may approve; the rule against approving one's own is in `mayDecide`.
   'softSensor.approve': ['manager', 'engineer'],
   'softSensor.suspend': ['engineer', 'technician', 'manager'],
+  'softSensor.recalibrate': ['engineer'],
+  'softSensor.nameOwner': ['engineer', 'manager'],
+  'duty.attend': ['engineer', 'manager'],
+  'events.record': ['engineer', 'technician', 'manager'],
 };
 
 /** Who asks: roles per site, and whether administrator of the company. */

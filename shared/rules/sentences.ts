@@ -43,13 +43,11 @@ export function healthSentence(reason: HealthReason, measure: Measure): string {
     case 'worse-than-holding':
       return `No better than holding the last laboratory result: error ${quantity('rmse')} RMSE against ${quantity('holdRmse')} over the last ${plural(figure(reason, 'n'), 'sample')}.`;
     case 'no-reference':
-      return reason.figures.sinceMs
-        ? 'No reference since the present model came into force. Ask for samples.'
-        : 'No reference yet. Ask for samples.';
+      return `No reference${sinceBaseline(reason) || ' yet'}. Ask for samples.`;
     case 'reference-overdue':
       return `No reference for ${durationWords(figure(reason, 'ageMs'))}; promised every ${durationWords(figure(reason, 'promisedMs'))}.`;
     case 'too-few-errors':
-      return `${plural(figure(reason, 'counted'), 'counted error')} so far; ${figure(reason, 'needed')} are needed to judge.`;
+      return `${plural(figure(reason, 'counted'), 'counted error')}${sinceBaseline(reason) || ' so far'}; ${figure(reason, 'needed')} are needed to judge.`;
     case 'no-inputs':
       return reason.figures.sinceMs === null
         ? 'No estimate has been computed yet.'
@@ -62,6 +60,15 @@ export function healthSentence(reason: HealthReason, measure: Measure): string {
       return `${figure(reason, 'count')} of the last ${plural(figure(reason, 'of'), 'sample')} did not count, so nothing better can be said.`;
   }
 }
+
+const sinceWords: Record<string, string> = {
+  training: ' since the training period',
+  revision: ' since the present model came into force',
+  calibration: ' since the last correction',
+  event: ' since the last event',
+};
+
+const sinceBaseline = (reason: HealthReason): string => sinceWords[String(reason.figures.baseline)] ?? '';
 
 function biasSentence(reason: HealthReason, measure: Measure): string {
   const decimals = biasDecimals(measure);

@@ -12,6 +12,7 @@ import {
   unique,
   uniqueIndex,
 } from 'drizzle-orm/pg-core';
+import type { Interval } from '../../../shared/contracts/interval.ts';
 import type { FitSummary, Model } from '../../../shared/contracts/models.ts';
 import type { Consumer } from '../../../shared/contracts/register.ts';
 import { identity, instant } from './columns.ts';
@@ -59,8 +60,8 @@ export const softSensors = pgTable(
       .notNull()
       .default('propose'),
     updateFactor: doublePrecision('update_factor').notNull().default(0.2),
-    recalibrationMonths: integer('recalibration_months').notNull(),
-    reviewMonths: integer('review_months').notNull(),
+    recalibrationInterval: jsonb('recalibration_interval').$type<Interval>().notNull(),
+    reviewInterval: jsonb('review_interval').$type<Interval>().notNull(),
     fallback: text('fallback').notNull().default(''),
     limitations: text('limitations').notNull().default(''),
     version: integer('version').notNull().default(1),
@@ -100,7 +101,10 @@ export const softSensors = pgTable(
     check('soft_sensors_arrives', sql`${t.historyArrives} in ('live', 'uploaded')`),
     check('soft_sensors_mode', sql`${t.correctionMode} in ('monitor', 'propose', 'automatic')`),
     check('soft_sensors_factor', sql`${t.updateFactor} > 0 and ${t.updateFactor} <= 1`),
-    check('soft_sensors_intervals', sql`${t.recalibrationMonths} > 0 and ${t.reviewMonths} > 0`),
+    check(
+      'soft_sensors_intervals',
+      sql`(${t.recalibrationInterval} ->> 'every')::int > 0 and (${t.reviewInterval} ->> 'every')::int > 0`,
+    ),
   ],
 );
 

@@ -39,6 +39,12 @@ export const softSensorStatus = pgTable(
     currentValue: doublePrecision('current_value'),
     currentSd: doublePrecision('current_sd'),
     healthSince: instant('health_since').notNull(),
+    healthBefore: text('health_before', { enum: healths }),
+    /** Since when the unit (or the soft sensor by itself) is stopped; health then stays as it was. */
+    stoppedSince: instant('stopped_since'),
+    recalibratedAt: instant('recalibrated_at'),
+    /** Counted references taken since the last recalibration, or since it came into service. */
+    referencesSince: integer('references_since').notNull().default(0),
     inService: boolean('in_service').notNull().default(false),
     ownerId: integer('owner_id').references(() => persons.id),
     /** Order on the board, worst first: health, then importance class, then bias against the allowed error. */
@@ -75,6 +81,7 @@ export const siteSummaries = pgTable('site_summaries', {
   unproven: integer('unproven').notNull(),
   unfitInClosedLoop: integer('unfit_in_closed_loop').notNull(),
   notInService: integer('not_in_service').notNull(),
+  stopped: integer('stopped').notNull().default(0),
 });
 
 /** The same at the last recount of each local month: its end, once the month is over. */
@@ -115,3 +122,12 @@ export const healthDays = pgTable(
     check('health_days_day_form', sql`${t.day} ~ '^\\d{4}-\\d{2}-\\d{2}$'`),
   ],
 );
+
+/** When a person last looked at the board, and the time before that, which "since you last looked" counts from. */
+export const boardLooks = pgTable('board_looks', {
+  personId: integer('person_id')
+    .primaryKey()
+    .references(() => persons.id),
+  lookedAt: instant('looked_at').notNull(),
+  previousAt: instant('previous_at'),
+});

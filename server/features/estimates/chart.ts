@@ -1,8 +1,10 @@
 import type { z } from 'zod';
 import type { chartSeries } from '../../../shared/contracts/judging.ts';
 import { bandAround } from '../../../shared/rules/band.ts';
+import { correctSeries } from '../../../shared/rules/correction-steps.ts';
 import type { Context } from '../../context.ts';
 import type { Permitted } from '../../http/rows.ts';
+import { correctionSteps } from '../calibrations/repo.ts';
 import { findTag } from '../tags/repo.ts';
 import { tagSeries } from '../tags/service.ts';
 import { type SensorRow, approvedRevisions } from './repo.ts';
@@ -19,5 +21,7 @@ export async function estimateSeries(
   const tag = (await findTag(context.db, sensor.siteId, sensor.estimateTagId))!;
   const series = await tagSeries(context, tag as Permitted<typeof tag>, from, to);
   const sd = (await approvedRevisions(context.db, sensor.siteId, sensor.id)).at(-1)?.model.residualSd ?? null;
-  return { at: series.at, value: series.value, ...bandAround(series.value, sd) };
+  const steps = await correctionSteps(context.db, sensor.siteId, sensor.id);
+  const value = correctSeries(series.at, series.value, steps);
+  return { at: series.at, value, ...bandAround(value, sd) };
 }

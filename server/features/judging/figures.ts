@@ -1,5 +1,7 @@
+import type { Baseline } from '../../../shared/contracts/calibrations.ts';
 import type { ErrorStripPoint, Health, PairedError } from '../../../shared/contracts/judging.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
+import { type CorrectionStep, corrected, correctionAt } from '../../../shared/rules/correction-steps.ts';
 import { wallClock } from '../../../shared/rules/format.ts';
 import {
   type CountedError,
@@ -10,41 +12,43 @@ import {
 } from '../../../shared/rules/health.ts';
 import { severityOf } from '../../../shared/rules/severity.ts';
 import type { RevisionRow, SensorRow } from '../estimates/repo.ts';
+import type { Stoppage } from '../events/standing.ts';
 import type { PairRow } from './repo.ts';
 
 const stripLength = 20;
 
-/**
- * Errors count from the baseline on: the present revision's own, and for the first one only samples after the period
- * that it was fitted on, since a model is not proven by what it was made from.
- */
-export function baselineOf(revisions: readonly RevisionRow[]): Date | null {
-  const inForce = revisions.at(-1);
-  if (!inForce) return null;
-  if (revisions.length > 1) return inForce.effectiveFrom;
-  return inForce.fit ? new Date(inForce.fit.to) : null;
+/** What judging needs besides the pairs, as it stood at one instant. */
+export interface JudgingFacts {
+  now: Date;
+  revision: RevisionRow | null;
+  baseline: Baseline;
+  steps: readonly CorrectionStep[];
+  stoppages: readonly Stoppage[];
 }
 
 export function healthInput(
   sensor: SensorRow,
   pairs: readonly PairRow[],
   errors: readonly CountedError[],
-  revisions: readonly RevisionRow[],
+  { now, revision, baseline, stoppages }: JudgingFacts,
   lastEstimateAt: Date | null,
-  now: Date,
 ): HealthInput {
-  const window = pairs.slice(-biasWindow);
+  // Samples taken while the unit stood say nothing against the laboratory.
+  const window = pairs.filter((pair) => pair.notCounted !== 'unit-stopped').slice(-biasWindow);
+  const started = stoppages.flatMap(({ to }) => (to && to <= now ? [to.getTime()] : []));
   return {
     nowMs: now.getTime(),
     errors,
     uncounted: { count: window.filter((pair) => pair.notCounted !== null).length, of: window.length },
     lastReferenceMs: pairs.findLast((pair) => pair.notCounted === null)?.takenAt.getTime() ?? null,
-    baselineMs: baselineOf(revisions)?.getTime() ?? null,
+    baseline: baseline.code,
+    baselineMs: baseline.at === null ? null : Date.parse(baseline.at),
+    runningSinceMs: started.length > 0 ? Math.max(...started) : null,
     lastEstimateMs: lastEstimateAt?.getTime() ?? null,
     promisedReferenceMs: sensor.promisedReferenceMs,
     historyArrives: sensor.historyArrives,
     historyEveryMs: sensor.historyEveryMs,
-    residualSd: revisions.at(-1)?.model.residualSd ?? null,
+    residualSd: revision?.model.residualSd ?? null,
     allowedSpread: sensor.allowedSpread,
   };
 }
@@ -52,14 +56,19 @@ export function healthInput(
 export const allowedAt = (sensor: SensorRow, value: number): number =>
   allowedErrorAt({ absolute: sensor.allowedErrorAbsolute, percent: sensor.allowedErrorPercent }, value);
 
-export function countedErrors(sensor: SensorRow, pairs: readonly PairRow[]): CountedError[] {
+/** Counted errors of the estimate as it was shown: with the correction in force when each sample was taken. */
+export function countedErrors(
+  sensor: SensorRow,
+  pairs: readonly PairRow[],
+  steps: readonly CorrectionStep[],
+): CountedError[] {
   return pairs
     .filter((pair) => pair.notCounted === null)
     .map((pair) => ({
       takenMs: pair.takenAt.getTime(),
       reportedMs: pair.reportedAt.getTime(),
       reference: pair.reference,
-      error: pair.error!,
+      error: correctedError(pair, steps)!,
       allowed: allowedAt(sensor, pair.reference),
     }));
 }
@@ -98,8 +107,18 @@ export function localDay(at: Date, zone: string): string {
   return `${year}-${String(month).padStart(2, '0')}-${String(day).padStart(2, '0')}`;
 }
 
-/** A pair as it is shown; the correction in force would be added here. */
-export function toPairedError(sensor: SensorRow, pair: PairRow, sampleNumber: string): PairedError {
+function correctedError(pair: PairRow, steps: readonly CorrectionStep[]): number | null {
+  if (pair.estimate === null) return null;
+  return corrected(correctionAt(steps, pair.takenAt.getTime()), pair.estimate) - pair.reference;
+}
+
+/** A pair as it is shown: its raw error, and the error with the correction in force when the sample was taken. */
+export function toPairedError(
+  sensor: SensorRow,
+  pair: PairRow,
+  sampleNumber: string,
+  steps: readonly CorrectionStep[],
+): PairedError {
   return {
     sampleId: pair.sampleId,
     sampleNumber,
@@ -109,7 +128,7 @@ export function toPairedError(sensor: SensorRow, pair: PairRow, sampleNumber: st
     estimate: pair.estimate,
     estimateSd: pair.estimateSd,
     error: pair.error,
-    corrected: pair.error,
+    corrected: correctedError(pair, steps),
     allowed: allowedAt(sensor, pair.reference),
     notCounted: pair.notCounted,
     origin: pair.origin,

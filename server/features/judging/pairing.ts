@@ -4,6 +4,7 @@ import type { Tx } from '../../db/client.ts';
 import { pairs } from '../../db/schema/index.ts';
 import { type RevisionRow, type SensorRow, approvedRevisions } from '../estimates/repo.ts';
 import { readSeries } from '../estimates/series.ts';
+import { type Stoppage, stoppedSince } from '../events/standing.ts';
 import {
   type PairRow,
   type SampleRow,
@@ -25,6 +26,7 @@ export async function pairSamples(
   sensor: SensorRow,
   dirtyFrom: Date | null,
   now: Date,
+  stoppages: readonly Stoppage[],
 ): Promise<void> {
   await retireOrphanPairs(tx, sensor, now);
   const found = await samplesToPair(tx, sensor, dirtyFrom);
@@ -36,6 +38,7 @@ export async function pairSamples(
     revisions,
     found.map(({ sample }) => sample),
     now,
+    stoppages,
   );
   const made: NewPair[] = [];
   const replaced: number[] = [];
@@ -55,6 +58,7 @@ async function pairMaker(
   revisions: readonly RevisionRow[],
   samples: readonly SampleRow[],
   now: Date,
+  stoppages: readonly Stoppage[],
 ): Promise<(sample: SampleRow) => NewPair> {
   const times = samples.flatMap((sample) =>
     sample.takenAt ? [sample.takenAt.getTime() - sensor.transportDelayMs] : [],
@@ -85,7 +89,8 @@ async function pairMaker(
     };
     const paired = pairSample(series, toPair(sample), { ...sensor, holdLimitMs: holdLimitOf(revision?.row) });
     const { sd, ...rest } = paired;
-    return { ...base, ...rest, estimateSd: sd };
+    const stopped = stoppedSince(stoppages, new Date(takenMs)) !== null;
+    return { ...base, ...rest, estimateSd: sd, ...(stopped ? { notCounted: 'unit-stopped' } : {}) };
   };
 }
 

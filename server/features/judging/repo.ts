@@ -1,4 +1,4 @@
-import { and, asc, desc, eq, gte, isNull, lte, sql } from 'drizzle-orm';
+import { and, asc, desc, eq, gt, gte, isNull, lte, sql } from 'drizzle-orm';
 import type { Queryable } from '../../db/client.ts';
 import { lifeStates, pairs, samples, softSensorStatus } from '../../db/schema/index.ts';
 import type { SensorRow } from '../estimates/repo.ts';
@@ -87,11 +87,12 @@ export async function standingPairs(db: Queryable, sensor: SensorRow, period?: {
     .orderBy(asc(pairs.takenAt), asc(pairs.sampleId));
 }
 
-/** The last standing pairs since an instant (or of all time), oldest first. */
+/** The last standing pairs since an instant (or of all time) whose result was reported by `now`, oldest first. */
 export async function lastPairs(
   db: Queryable,
   sensor: SensorRow,
   since: Date | null,
+  now: Date,
   atMost: number,
 ): Promise<PairRow[]> {
   const rows = await db
@@ -102,12 +103,33 @@ export async function lastPairs(
         eq(pairs.siteId, sensor.siteId),
         eq(pairs.softSensorId, sensor.id),
         isNull(pairs.supersededAt),
+        lte(pairs.reportedAt, now),
         since === null ? undefined : gte(pairs.takenAt, since),
       ),
     )
     .orderBy(desc(pairs.takenAt), desc(pairs.sampleId))
     .limit(atMost);
   return rows.reverse();
+}
+
+/** Counted references taken after an instant (or ever) and reported by `now`. */
+export async function countReferences(
+  db: Queryable,
+  sensor: SensorRow,
+  after: Date | null,
+  now: Date,
+): Promise<number> {
+  return db.$count(
+    pairs,
+    and(
+      eq(pairs.siteId, sensor.siteId),
+      eq(pairs.softSensorId, sensor.id),
+      isNull(pairs.supersededAt),
+      isNull(pairs.notCounted),
+      lte(pairs.reportedAt, now),
+      after === null ? undefined : gt(pairs.takenAt, after),
+    ),
+  );
 }
 
 export async function findStatus(db: Queryable, siteId: number, softSensorId: number) {
@@ -139,11 +161,18 @@ export async function saveHealthDay(
   return saved.rows[0]!.fresh;
 }
 
-export async function lifeNow(db: Queryable, siteId: number, softSensorId: number) {
+/** The life state that stands, or that stood at an instant. */
+export async function lifeNow(db: Queryable, siteId: number, softSensorId: number, at?: Date) {
   const [row] = await db
     .select()
     .from(lifeStates)
-    .where(and(eq(lifeStates.siteId, siteId), eq(lifeStates.softSensorId, softSensorId)))
+    .where(
+      and(
+        eq(lifeStates.siteId, siteId),
+        eq(lifeStates.softSensorId, softSensorId),
+        at === undefined ? undefined : lte(lifeStates.effectiveFrom, at),
+      ),
+    )
     .orderBy(desc(lifeStates.effectiveFrom), desc(lifeStates.id))
     .limit(1);
   return row ?? null;

@@ -45,6 +45,35 @@ export async function putBack(context: Context, by: By, row: Permitted<SensorRow
   );
 }
 
+/** Says afterwards why it was suspended; a reason once given stays. */
+export async function sayWhySuspended(
+  context: Context,
+  by: By,
+  row: Permitted<SensorRow>,
+  reason: string,
+): Promise<Sheet> {
+  return context.db.transaction(async (tx) => {
+    const sensor = await lockRow(tx, 'softSensor', row);
+    const life = await lifeNow(tx, row.siteId, row.id);
+    if (life?.state !== 'suspended') throw new AppError('conflict', 'This soft sensor is not suspended.');
+    if (life.reason !== '')
+      throw new AppError('conflict', 'A reason was given already, and stays as it was given.');
+    await tx.update(lifeStates).set({ reason }).where(eq(lifeStates.id, life.id));
+    await note(
+      context,
+      tx,
+      by,
+      sensor,
+      'change',
+      'softSensor',
+      { lifeReason: '' },
+      { lifeReason: reason },
+      reason,
+    );
+    return readSheet(tx, sensor, context.clock());
+  });
+}
+
 async function changeLife(
   context: Context,
   by: By,
@@ -76,6 +105,6 @@ async function changeLife(
       { life: state },
       reason,
     );
-    return readSheet(tx, sensor);
+    return readSheet(tx, sensor, context.clock());
   });
 }

@@ -89,6 +89,7 @@ export async function surroundings(db: Queryable, sensor: SensorRow) {
       methodReproducibility: methods.reproducibility,
       life: lifeStates.state,
       lifeSince: lifeStates.effectiveFrom,
+      lifeReason: lifeStates.reason,
       owner: { id: owner.id, name: owner.name },
       deputy: { id: deputy.id, name: deputy.name },
       approver: { id: approver.id, name: approver.name },
