@@ -38,8 +38,6 @@ export type Evidence =
 
 /** Rolling origins start after 8 samples, and 10 are needed to tell candidates apart. */
 const fewestToJudge = 18;
-/** Samples that candidates are fitted to and judged on at most: older ones say little of today. */
-const mostUsed = 60;
 /** Errors since the baseline from which their autocorrelation is taken. */
 const errorsForPhi = 30;
 /** A false signal every ten years, as the limits of drift are set. */
@@ -49,7 +47,8 @@ const yearMs = 365.25 * 86_400_000;
 /**
  * Candidates of a recalibration side by side, simplest first, judged on counted samples since the baseline. Where a
  * CUSUM of the corrected errors (target zero) stands beyond its limit, the samples up to the signal neither fit nor
- * choose: at the signal the mean is the winner's curse of the search. With 18 permitted samples or more, rolling origin
+ * choose: at the signal the mean is the winner's curse of the search. Of the others the last 30 count, as for the bias that
+ * is shown: older ones say little of today. With 18 permitted samples or more, rolling origin
  * judges each procedure on later samples (`judgeRecalibration`); with 8 to 17 only a bias is offered, unproven.
  */
 export function gatherEvidence(samples: readonly EvidenceSample[], basis: EvidenceBasis): Evidence {
@@ -58,7 +57,7 @@ export function gatherEvidence(samples: readonly EvidenceSample[], basis: Eviden
   const asFound = biasWithInterval(errors.slice(-biasWindow));
   if (!asFound.ok) return { ok: false, counted: samples.length, needed: fewestErrors };
   const { signal, excluded } = signalIn(samples, errors, basis.residualSd ?? asFound.sd);
-  const permitted = samples.slice(excluded).slice(-mostUsed);
+  const permitted = samples.slice(excluded).slice(-biasWindow);
   const allowed = allowedOver(samples.slice(-biasWindow));
   const judged = judgedCandidates(permitted, basis, allowed, signal !== null);
   return {

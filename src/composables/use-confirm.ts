@@ -10,6 +10,8 @@ export interface Question {
   action: string;
   /** Label of a reason to be written first; the promise then gives it. */
   reason?: string;
+  /** The reason may be left out now. */
+  reasonLater?: boolean;
   cancel?: string;
 }
 

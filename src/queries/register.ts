@@ -183,6 +183,16 @@ export function useSuspend(id: MaybeRefOrGetter<number>) {
   });
 }
 
+/** Says afterwards why it was suspended. */
+export function useSayWhySuspended(id: MaybeRefOrGetter<number>) {
+  const take = useTakeSheet();
+  return useMutation({
+    mutationFn: (reason: string) =>
+      call('life.reason', { params: { softSensorId: String(toValue(id)) }, body: { reason } }),
+    onSuccess: take,
+  });
+}
+
 export function usePutBack(id: MaybeRefOrGetter<number>) {
   const take = useTakeSheet();
   return useMutation({

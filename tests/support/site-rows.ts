@@ -22,6 +22,7 @@ import {
   tagSpans,
   units,
 } from '../../server/db/schema/index.ts';
+import { addRecordRows } from './record-rows.ts';
 import { addFile } from './stored-file.ts';
 import type { Model } from '../../shared/contracts/models.ts';
 
@@ -38,6 +39,10 @@ export type SiteRows = Record<
   | 'samplePointId'
   | 'softSensorId'
   | 'revisionId'
+  | 'calibrationId'
+  | 'eventId'
+  | 'dutyId'
+  | 'handoverId'
   | 'replayId'
   | 'sampleImportId'
   | 'historyImportId'
@@ -51,6 +56,7 @@ export async function addSiteRows(db: Db, mark: string, personId: number): Promi
   const laboratory = await addLaboratory(db, mark, plant, personId);
   const sensor = await addSensor(db, mark, { ...plant, ...laboratory }, personId);
   const imports = await addHistory(db, mark, plant, personId);
+  const records = await addRecordRows(db, mark, { ...plant, ...sensor }, personId, at);
   await db.insert(auditEntries).values({
     at,
     siteId: plant.siteId,
@@ -63,7 +69,7 @@ export async function addSiteRows(db: Db, mark: string, personId: number): Promi
     entityName: mark,
     requestId: 'fixture',
   });
-  return { ...plant, ...laboratory, ...sensor, ...imports };
+  return { ...plant, ...laboratory, ...sensor, ...imports, ...records };
 }
 
 const only = async <T>(rows: Promise<T[]>): Promise<T> => (await rows)[0]!;
@@ -211,7 +217,12 @@ function sheetOf(mark: string, rows: Plant & Laboratory, estimateTagId: number, 
     promisedReferenceMs: 86_400_000,
     allowedErrorAbsolute: 10,
     historyEveryMs: 60_000,
-    recalibrationInterval: { every: 3, unit: 'months' as const, counted: 'last-done' as const, anchorOn: null },
+    recalibrationInterval: {
+      every: 3,
+      unit: 'months' as const,
+      counted: 'last-done' as const,
+      anchorOn: null,
+    },
     reviewInterval: { every: 12, unit: 'months' as const, counted: 'last-done' as const, anchorOn: null },
     createdAt: at,
     createdBy: personId,

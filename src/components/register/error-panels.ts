@@ -14,6 +14,9 @@ export interface ErrorPictures {
 
 type Counted = PairedError & { error: number };
 
+/** The error of what was shown: with the correction in force when the sample was taken. */
+const shownError = ({ corrected, error }: Counted): number => corrected ?? error;
+
 /** Pairs that count, oldest first: the EWMA has one point for each of these. */
 export function countedPairs(errors: readonly PairedError[]): Counted[] {
   return errors.filter((pair): pair is Counted => pair.notCounted === null && pair.error !== null);
@@ -70,7 +73,7 @@ export function errorPanel({ errors, judgement, unit, decimals }: ErrorPictures)
   const marks: ChartMark[] = [
     ...allowedMarks(counted, at),
     ...ewmaMarks(judgement, at),
-    { kind: 'rings', label: 'Error', at, values: counted.map(({ error }) => error) },
+    { kind: 'rings', label: 'Error', at, values: counted.map(shownError) },
   ];
   const { ewma } = judgement;
   const mean = ewma
