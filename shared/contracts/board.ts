@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { endpoint, idNumber, idText, isoInstant, nothing } from './endpoint.ts';
+import { isoDate } from './interval.ts';
 import { errorStripPoint, health, healthReason } from './judging.ts';
 import { consumer } from './register.ts';
 
@@ -30,6 +31,8 @@ export const boardRow = z.object({
   owner: z.string().nullable(),
   recalibratedAt: isoInstant.nullable(),
   referencesSince: z.number().int(),
+  /** The open recalibration or review that falls due first, by date at the site. */
+  duty: z.object({ kind: z.enum(['recalibration', 'review']), dueOn: isoDate }).nullable(),
   /** May be confirmed as found by this person without looking at its evidence one by one. */
   confirmable: z.boolean(),
 });
@@ -44,6 +47,9 @@ const counts = z.object({
   unfitInClosedLoop: z.number().int(),
   notInService: z.number().int(),
   stopped: z.number().int(),
+  /** Recalibrations and reviews that are late, and soft sensors that nobody rightly owns. */
+  overdue: z.number().int(),
+  unowned: z.number().int(),
 });
 
 /** Unfit and unproven of one site at the end of a month ("2026-11"). */
@@ -117,6 +123,8 @@ export const boards = {
         unfitInClosedLoop: 1,
         notInService: 0,
         stopped: 1,
+        overdue: 2,
+        unowned: 1,
       },
       sites: [],
       rows: [],

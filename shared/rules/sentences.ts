@@ -1,5 +1,5 @@
 import type { Health, HealthReason } from '../contracts/judging.ts';
-import { formatCount, formatNumber, formatQuantity, plural } from './format.ts';
+import { formatNumber, formatQuantity, plural } from './format.ts';
 
 /** What a sentence about one soft sensor needs: its engineering unit and decimals. */
 export interface Measure {
@@ -95,55 +95,6 @@ export function biasWords(bias: number, unit: string, decimals: number): string 
 
 /** Decimals for a bias: the sensor's own and one more, as a mean is known better than one value. */
 export const biasDecimals = (measure: Measure): number => Math.min(6, measure.decimals + 1);
-
-/** Counts of soft sensors in service, as the board has them. */
-export interface BoardCounts {
-  total: number;
-  fit: number;
-  watch: number;
-  unfit: number;
-  unproven: number;
-  unfitInClosedLoop: number;
-}
-
-/** The board's headline: its finding, as a sentence. */
-export function boardHeadline(counts: BoardCounts): string {
-  const { total, unfit, unproven, watch } = counts;
-  const of = `of ${formatCount(total)} ${total === 1 ? 'soft sensor' : 'soft sensors'}`;
-  if (total === 0) return 'No soft sensor is in service yet.';
-  if (unfit > 0) return `${formatCount(unfit)} ${of} can’t be relied on${loopWords(counts)}.`;
-  if (unproven > 0) {
-    return `${formatCount(unproven)} ${of} ${unproven === 1 ? 'is' : 'are'} unproven; none is known to be unfit.`;
-  }
-  if (watch > 0)
-    return `No soft sensor is unfit; ${formatCount(watch)} of ${formatCount(total)} ${watch === 1 ? 'needs' : 'need'} watching.`;
-  return total === 1
-    ? 'The one soft sensor in service is fit.'
-    : `All ${formatCount(total)} soft sensors are fit.`;
-}
-
-function loopWords({ unfit, unfitInClosedLoop }: BoardCounts): string {
-  if (unfitInClosedLoop === 0) return '';
-  return unfit === 1
-    ? '; it is in closed loop'
-    : `, ${formatCount(unfitInClosedLoop)} of them in closed loop`;
-}
-
-/** Below the headline: the rest of the counts. */
-export function boardSubline(counts: BoardCounts): string {
-  const parts = [
-    ...(counts.unproven > 0 && counts.unfit > 0
-      ? [`${counts.unproven} ${counts.unproven === 1 ? 'is' : 'are'} unproven`]
-      : []),
-    ...(counts.watch > 0 && counts.unfit + counts.unproven > 0
-      ? [`${counts.watch} ${counts.watch === 1 ? 'needs' : 'need'} watching`]
-      : []),
-    ...(counts.fit > 0 && counts.fit < counts.total
-      ? [`${counts.fit} ${counts.fit === 1 ? 'is' : 'are'} fit`]
-      : []),
-  ];
-  return parts.length === 0 ? '' : `${parts.join(', ')}.`;
-}
 
 const notCounted: Record<string, string> = {
   'no-estimate': 'No estimate at that time',

@@ -2,10 +2,12 @@ import { keepPreviousData, useQuery } from '@tanstack/vue-query';
 import { type MaybeRefOrGetter, toValue } from 'vue';
 import { call } from '../api/call.ts';
 
-/** What of the board is asked for. */
+/** What of the board is asked for. changedSince: only what changed since that instant. */
 export interface BoardChoice {
   siteId: number | null;
-  health: 'all' | 'not-fit' | 'fit';
+  health: 'all' | 'not-fit' | 'fit' | 'stopped' | 'confirmable';
+  whose: 'all' | 'mine';
+  changedSince: string | null;
   limit: number;
 }
 
@@ -14,9 +16,13 @@ export function useBoard(choice: MaybeRefOrGetter<BoardChoice>, enabled: MaybeRe
   return useQuery({
     queryKey: ['board', choice],
     queryFn: () => {
-      const { siteId, health, limit } = toValue(choice);
+      const { siteId, changedSince, ...rest } = toValue(choice);
       return call('board.get', {
-        query: { ...(siteId === null ? {} : { siteId: String(siteId) }), health, limit },
+        query: {
+          ...rest,
+          ...(siteId === null ? {} : { siteId: String(siteId) }),
+          ...(changedSince === null ? {} : { changedSince }),
+        },
       });
     },
     enabled,
@@ -24,3 +30,6 @@ export function useBoard(choice: MaybeRefOrGetter<BoardChoice>, enabled: MaybeRe
     placeholderData: keepPreviousData,
   });
 }
+
+/** Says that the board was looked at. */
+export const noteLook = () => call('board.looked', { body: {} });

@@ -77,3 +77,15 @@ export function useEnterCalibration(id: MaybeRefOrGetter<number>) {
     onSuccess: useRefresh(),
   });
 }
+
+/** Confirms several as found; what was refused comes back with its reason. */
+export function useConfirmAsFound() {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: (softSensorIds: number[]) => call('calibrations.confirm', { body: { softSensorIds } }),
+    onSuccess: () => {
+      for (const key of ['board', 'duties', 'sheet', 'calibrations', 'evidence'])
+        void client.invalidateQueries({ queryKey: [key] });
+    },
+  });
+}

@@ -33,6 +33,13 @@ const row: BoardRow = {
   lastErrors: [],
   lastReferenceAt: '2026-11-29T06:00:00.000Z',
   owner: 'Marco Castellane',
+  healthBefore: 'watch',
+  healthSince: '2026-11-27T06:00:00.000Z',
+  stoppedSince: null,
+  recalibratedAt: null,
+  referencesSince: 12,
+  confirmable: false,
+  duty: { kind: 'recalibration', dueOn: '2026-11-22' },
 };
 
 describe('a row of the board', () => {

@@ -28,16 +28,30 @@ type SiteCounts = Board['counts'] & {
 };
 
 /** Counts of every site's soft sensors by health with its months since `since`, as the last recount left them. */
-export async function countBySite(db: Queryable, filter: BoardFilter, since: string): Promise<SiteCounts[]> {
+export async function countBySite(
+  db: Queryable,
+  filter: BoardFilter,
+  since: string,
+  at: Date,
+): Promise<SiteCounts[]> {
+  const now = at.toISOString();
   const found = await db.execute<SiteCounts & Record<string, unknown>>(sql`
     select s.id as "siteId", s.name, s.zone,
       coalesce(c.total, 0) as total, coalesce(c.fit, 0) as fit, coalesce(c.watch, 0) as watch,
       coalesce(c.unfit, 0) as unfit, coalesce(c.unproven, 0) as unproven,
       coalesce(c.unfit_in_closed_loop, 0) as "unfitInClosedLoop", coalesce(c.not_in_service, 0) as "notInService",
-      coalesce(c.stopped, 0) as stopped,
+      coalesce(c.stopped, 0) as stopped, coalesce(d.overdue, 0) as overdue, coalesce(d.unowned, 0) as unowned,
       coalesce((select json_agg(json_build_object('month', m.month, 'unfit', m.unfit, 'unproven', m.unproven) order by m.month)
         from site_months m where m.site_id = s.id and m.month >= ${since}), '[]') as months
     from sites s left join site_summaries c on c.site_id = s.id
+    left join (
+      select d.site_id, count(*) filter (where d.kind <> 'ownership-gap')::int as overdue,
+        count(*) filter (where d.kind = 'ownership-gap')::int as unowned
+      from duties d join sites z on z.id = d.site_id
+      where d.state = 'open' and d.due_on <= (${now}::timestamptz)::date + 1
+        and (d.kind = 'ownership-gap' or d.due_on < (${now}::timestamptz at time zone z.zone)::date)
+      group by d.site_id
+    ) d on d.site_id = s.id
     where s.archived_at is null and ${siteFilter(filter, 's.id')}
     order by s.name`);
   return found.rows;
@@ -65,6 +79,9 @@ export async function worstFirst(db: Queryable, filter: BoardFilter): Promise<Bo
       st.health, st.health_before as "healthBefore", st.health_since as "healthSince", st.stopped_since as "stoppedSince",
       st.reasons, st.bias, st.bias_low as "biasLow", st.bias_high as "biasHigh", st.counted,
       st.allowed_error as "allowedError", st.last_errors as "lastErrors", st.last_reference_at as "lastReferenceAt",
+      (select json_build_object('kind', d.kind, 'dueOn', d.due_on) from duties d
+        where d.site_id = st.site_id and d.soft_sensor_id = st.soft_sensor_id and d.state = 'open' and d.kind <> 'ownership-gap'
+        order by d.due_on limit 1) as duty,
       p.name as owner, st.recalibrated_at as "recalibratedAt", st.references_since as "referencesSince",
       ${confirmable(filter)} as confirmable
     from worst st

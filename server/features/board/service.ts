@@ -21,7 +21,7 @@ export async function readBoard(
   const person = { id: actor.id, managed: sitesAs('manager'), edited: sitesAs('engineer') };
   const filter = { ...query, person };
   const [bySite, rows, waiting, looked] = await Promise.all([
-    countBySite(context.db, filter, since),
+    countBySite(context.db, filter, since, now),
     worstFirst(context.db, filter),
     waitingFor(context.db, filter, now),
     lastLook(context.db, actor.id, now),
@@ -37,6 +37,8 @@ export async function readBoard(
       unfitInClosedLoop: sum('unfitInClosedLoop'),
       notInService: sum('notInService'),
       stopped: sum('stopped'),
+      overdue: sum('overdue'),
+      unowned: sum('unowned'),
     },
     sites: bySite.map(({ siteId, name, zone, total, months }) => ({ siteId, name, zone, total, months })),
     rows,

@@ -1,5 +1,5 @@
 import type { BoardRow } from '../../../shared/contracts/board.ts';
-import { formatAge, formatNumber, formatQuantity } from '../../../shared/rules/format.ts';
+import { formatAge, formatNumber, formatQuantity, wallClock } from '../../../shared/rules/format.ts';
 import { biasDecimals, durationWords, healthSentence } from '../../../shared/rules/sentences.ts';
 import type { SiteMonths } from '../charts/month-layout.ts';
 import { kindWord } from '../register/sheet-words.ts';
@@ -54,6 +54,12 @@ function otherFinding(row: BoardRow, worst: BoardRow['reasons'][number], bias: F
   const sentence = healthSentence(worst, row);
   if (worst.health === 'unproven' || bias === null) return { strong: sentence.replace(/\.$/, ''), rest: '' };
   return { strong: bias.strong, rest: `${bias.rest}. ${sentence}` };
+}
+
+/** The date that a clock at the site shows, "2026-12-01". */
+export function dayAt(now: string, zone: string): string {
+  const { year, month, day } = wallClock(now, zone);
+  return `${year}-${String(month).padStart(2, '0')}-${String(day).padStart(2, '0')}`;
 }
 
 /** "closed loop (A)": the weightiest use, and the class. */

@@ -1,36 +1,60 @@
 import { useQuasar } from 'quasar';
 import { computed } from 'vue';
 import { useBoard } from '../../queries/board.ts';
+import type { BoardView } from './BoardViews.vue';
 import { useAddressWord, useSiteInAddress } from './use-address.ts';
+import { useLastLook } from './use-last-look.ts';
 
 const FEW = 20;
 const MANY = 500;
 
-/** The board as its address asks for it: site, filter, class, and what is unfolded. */
+/** The board as its address asks for it: site, whose, filter, class, and what is unfolded. */
 export function useBoardRows() {
   const $q = useQuasar();
   const { chosen } = useSiteInAddress();
   const find = useAddressWord('find');
   const importance = useAddressWord('class');
+  const viewWord = useAddressWord('view');
   const fitWord = useAddressWord('fit');
   const moreWord = useAddressWord('more');
+  const stoppedWord = useAddressWord('stopped');
 
   const narrow = computed(() => $q.screen.lt.sm);
+  const view = computed({
+    get: (): BoardView => (viewWord.value === 'mine' || viewWord.value === 'new' ? viewWord.value : ''),
+    set: (next) => (viewWord.value = next),
+  });
   const filtering = computed(() => find.value !== '' || importance.value !== '');
   const fitShown = computed(() => fitWord.value === '1');
+  const stoppedShown = computed(() => stoppedWord.value === '1');
   const more = computed(() => moreWord.value === '1');
-  const siteId = computed(() => chosen.value?.id ?? null);
+  const choice = computed(() => ({
+    siteId: chosen.value?.id ?? null,
+    whose: view.value === 'mine' ? ('mine' as const) : ('all' as const),
+    changedSince: null,
+  }));
 
   const board = useBoard(
     computed(() => ({
-      siteId: siteId.value,
+      ...choice.value,
       health: 'not-fit' as const,
-      limit: more.value || filtering.value ? MANY : FEW,
+      limit: more.value || filtering.value || view.value === 'mine' ? MANY : FEW,
     })),
   );
+  const lookedAt = useLastLook(() => board.data.value);
+  const isNew = computed(() => view.value === 'new' && lookedAt.value !== null);
+  const changed = useBoard(
+    computed(() => ({ ...choice.value, changedSince: lookedAt.value, health: 'all' as const, limit: MANY })),
+    isNew,
+  );
+  const withFit = computed(() => fitShown.value || filtering.value);
   const fit = useBoard(
-    computed(() => ({ siteId: siteId.value, health: 'fit' as const, limit: MANY })),
-    computed(() => fitShown.value || filtering.value),
+    computed(() => ({ ...choice.value, health: 'fit' as const, limit: MANY })),
+    withFit,
+  );
+  const stopped = useBoard(
+    computed(() => ({ ...choice.value, health: 'stopped' as const, limit: MANY })),
+    stoppedShown,
   );
   const counts = computed(() => board.data.value?.counts);
   /** On a phone what only needs watching waits behind a word too. */
@@ -41,24 +65,36 @@ export function useBoardRows() {
       : rows;
   });
   const rows = computed(() => {
-    const fitRows = fitShown.value || filtering.value ? (fit.data.value?.rows ?? []) : [];
-    const all = [...notFit.value, ...fitRows];
-    return importance.value === '' ? all : all.filter((row) => row.importanceClass === importance.value);
+    const listed = isNew.value
+      ? (changed.data.value?.rows ?? [])
+      : [
+          ...notFit.value,
+          ...(withFit.value ? (fit.data.value?.rows ?? []) : []),
+          ...(stoppedShown.value ? (stopped.data.value?.rows ?? []) : []),
+        ];
+    return importance.value === ''
+      ? listed
+      : listed.filter((row) => row.importanceClass === importance.value);
   });
   const hidden = computed(() => {
-    if (!counts.value || filtering.value) return 0;
+    if (!counts.value || filtering.value || view.value !== '') return 0;
     return Math.max(0, counts.value.total - counts.value.fit - notFit.value.length);
   });
   /** More are fit than one answer holds: what is left out is said, never silently missing. */
   const leftOut = computed(() => {
     const got = fit.data.value?.rows.length ?? 0;
-    return (fitShown.value || filtering.value) && got > 0 ? (counts.value?.fit ?? 0) - got : 0;
+    return withFit.value && view.value === '' && got > 0 ? (counts.value?.fit ?? 0) - got : 0;
   });
-  const loading = computed(() => board.isFetching.value || fit.isFetching.value);
+  const loading = computed(() => [board, fit, changed, stopped].some(({ isFetching }) => isFetching.value));
   const showMore = () => (moreWord.value = '1');
   const foldFit = () => (fitWord.value = fitShown.value ? '' : '1');
+  const foldStopped = () => (stoppedWord.value = stoppedShown.value ? '' : '1');
   return {
     chosen,
+    view,
+    lookedAt,
+    isNew,
+    choice,
     find,
     importance,
     narrow,
@@ -70,7 +106,9 @@ export function useBoardRows() {
     leftOut,
     loading,
     fitShown,
+    stoppedShown,
     showMore,
     foldFit,
+    foldStopped,
   };
 }

@@ -59,6 +59,16 @@ export function untilMended(sheet: Sheet, now: Date): string | null {
   return said || lab;
 }
 
+/** "Range 1,200 to 1,650 °C." where the sheet states one. */
+export function rangeWords({ fields }: Sheet): string {
+  const { rangeLow, rangeHigh, unit, decimals } = fields;
+  if (rangeLow === null && rangeHigh === null) return '';
+  const high = formatQuantity(rangeHigh, unit, decimals);
+  if (rangeLow === null) return `Range up to ${high}.`;
+  if (rangeHigh === null) return `Range from ${formatQuantity(rangeLow, unit, decimals)}.`;
+  return `Range ${formatNumber(rangeLow, decimals)} to ${high}.`;
+}
+
 const biasCodes = ['bias-beyond-allowed', 'bias-reaches-allowed', 'interval-wider-than-allowed'];
 
 /** Reasons worth a line of their own: a bias on its way out says nothing beside one that stands. */

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import type { HealthReason } from '../../../shared/contracts/judging.ts';
-import { boardHeadline, boardSubline, healthSentence } from '../../../shared/rules/sentences.ts';
+import { boardHeadline, boardSubline } from '../../../shared/rules/board-sentences.ts';
+import { healthSentence } from '../../../shared/rules/sentences.ts';
 
 const measure = { unit: '°C', decimals: 0 };
 const counts = { total: 52, fit: 41, watch: 6, unfit: 3, unproven: 2, unfitInClosedLoop: 1 };
