@@ -25,7 +25,10 @@ const browserFlags = [
 ];
 
 /** The whole product for the calling file: server, workers, built client and Chromium, on a database of its own. */
-export function useSite(prepare: (context: Context) => Promise<void> = async () => {}): Site {
+export function useSite(
+  prepare: (context: Context) => Promise<void> = async () => {},
+  clock: () => Date = () => new Date(),
+): Site {
   const site = {} as Site;
   let server: Server;
   let workers: Workers;
@@ -34,7 +37,7 @@ export function useSite(prepare: (context: Context) => Promise<void> = async () 
   const complaints: string[] = [];
 
   useTestContext(
-    () => new Date(),
+    clock,
     async (context) => {
       site.context = context;
       await prepare(context);

@@ -40,11 +40,15 @@ export function useServer(): TestServer {
   const server = { now: { value: null } } as unknown as TestServer;
   useTestContext(
     () => server.now.value ?? new Date(),
-    (context) => {
-      server.context = context;
-      server.app = createApp(context, { signInAttempts: 500 });
-    },
+    (context) => void serverOn(context, server),
   );
+  return server;
+}
+
+/** The same on a context that is there already: what a browser test sets its scene with. */
+export function serverOn(context: Context, server = { now: { value: null } } as unknown as TestServer): TestServer {
+  server.context = context;
+  server.app = createApp(context, { signInAttempts: 500 });
   server.drainJobs = () =>
     runOnce({
       pgPool: server.context.pool,

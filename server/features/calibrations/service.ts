@@ -49,6 +49,7 @@ export async function proposeCalibration(
     const { evidence } = reply;
     if (evidence.used !== body.seen.used || evidence.to !== body.seen.to)
       throw stale('evidence', { ...evidence });
+    refuseMonitored(sensor, body.kind);
     const candidate = evidence.candidates.find(({ kind }) => kind === body.kind);
     if (!candidate || candidate.slope === null || candidate.offset === null) {
       throw invalidInput([
@@ -73,6 +74,13 @@ export async function proposeCalibration(
     await note(context, tx, by, sensor, 'propose', 'recalibration', null, told(made), body.reason);
     return getCalibration(tx, made);
   });
+}
+
+function refuseMonitored({ correctionMode }: SensorRow, kind: string): void {
+  if (correctionMode !== 'monitor' || kind === 'as-found') return;
+  const message =
+    'This soft sensor is monitored only. Leave it as found, or change its correction mode on the data sheet first.';
+  throw invalidInput([{ path: 'kind', message }]);
 }
 
 type NewCalibration = Omit<
