@@ -11,3 +11,10 @@ export function randomFrom(seed: number) {
   return { uniform, normal };
 }
 export type Random = ReturnType<typeof randomFrom>;
+
+/** A stream of its own for each name (FNV-1a), so that one more or one fewer elsewhere changes no other numbers. */
+export function streamOf(seed: number, name: string): Random {
+  let hash = 0x811c9dc5 ^ seed;
+  for (let i = 0; i < name.length; i++) hash = Math.imul(hash ^ name.charCodeAt(i), 0x01000193);
+  return randomFrom(hash);
+}

@@ -2,7 +2,8 @@ import { z } from 'zod';
 import { endpoint, idNumber, ids, idText, isoInstant, longText, shortText, version } from './endpoint.ts';
 import { interval, isoDate } from './interval.ts';
 import { health, healthReason, errorStripPoint } from './judging.ts';
-import { calibration, correction } from './calibrations.ts';
+import { correction } from './calibration-evidence.ts';
+import { calibration } from './calibrations.ts';
 import { draft, positive, revision } from './models.ts';
 import { exampleSheet } from './register-examples.ts';
 

@@ -1,4 +1,4 @@
-import type { Baseline } from '../contracts/calibrations.ts';
+import type { Baseline } from '../contracts/calibration-evidence.ts';
 
 /** What may restart the errors of a soft sensor; instants, null where there was none. */
 export interface BaselineFacts {

@@ -1,4 +1,4 @@
-import type { Correction } from '../contracts/calibrations.ts';
+import type { Correction } from '../contracts/calibration-evidence.ts';
 
 /** From an instant on this correction is in force, until the next step. */
 export interface CorrectionStep extends Correction {

@@ -1,4 +1,4 @@
-import type { Baseline } from '../contracts/calibrations.ts';
+import type { Baseline } from '../contracts/calibration-evidence.ts';
 import type { Health, HealthReason } from '../contracts/judging.ts';
 import { biasWithInterval } from '../numerics/bias.ts';
 import { holdLast } from '../numerics/hold-last.ts';

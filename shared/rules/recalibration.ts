@@ -1,10 +1,4 @@
-import type {
-  Baseline,
-  CalibrationCandidate,
-  CalibrationEvidence,
-  CalibrationKind,
-  Correction,
-} from '../contracts/calibrations.ts';
+import type { Baseline, CalibrationCandidate, CalibrationEvidence, CalibrationKind, Correction } from '../contracts/calibration-evidence.ts';
 import { biasWithInterval } from '../numerics/bias.ts';
 import { designCusum } from '../numerics/cusum-design.ts';
 import { driftHistory } from '../numerics/drift.ts';

@@ -2,7 +2,8 @@ import { and, eq } from 'drizzle-orm';
 import { describe, expect, it } from 'vitest';
 import { calibrations, ownerships, readings, samples, softSensors } from '../../server/db/schema/index.ts';
 import { samplesChanged } from '../../server/features/judging/changed.ts';
-import type { CalibrationEvidence, CalibrationRecord } from '../../shared/contracts/calibrations.ts';
+import type { CalibrationEvidence } from '../../shared/contracts/calibration-evidence.ts';
+import type { CalibrationRecord } from '../../shared/contracts/calibrations.ts';
 import type { Sheet, SheetFields } from '../../shared/contracts/register.ts';
 import { ensurePartitions } from '../../server/db/partitions.ts';
 import {

@@ -7,7 +7,7 @@ import { seedDemo } from '../../seeds/demo.ts';
 import { signInAs, useSite } from '../support/browser.ts';
 
 const axe = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8');
-const site = useSite(seedDemo);
+const site = useSite((context) => seedDemo(context, { dailyDays: 3 }));
 
 /** Pages of the demo, as the person who works with each. */
 const screens: [who: string, path: string][] = [
@@ -18,8 +18,16 @@ const screens: [who: string, path: string][] = [
   ['engineer', '/register/1/model'],
   ['engineer', '/register/1/replays'],
   ['engineer', '/register/1/samples'],
+  ['technician', '/register/1/events'],
+  ['technician', '/register/1/events?record=1'],
+  ['engineer', '/sites/1/events'],
+  ['engineer', '/sites/1/events?add=1'],
   ['engineer', '/register/1/sheet'],
   ['manager', '/register/1/changes'],
+  ['engineer', '/register/1/sheet?edit=1'],
+  ['engineer', '/duties'],
+  ['manager', '/duties?whose=sites'],
+  ['manager', '/duties?whose=sites&state=closed'],
   ['technician', '/samples'],
   ['technician', '/samples/points'],
   ['engineer', '/history'],

@@ -1,6 +1,6 @@
 import type { Db } from '../../server/db/client.ts';
 import { calibrations, duties, events, handovers } from '../../server/db/schema/index.ts';
-import { exampleEvidence } from '../../shared/contracts/calibrations.ts';
+import { exampleEvidence } from '../../shared/contracts/calibration-evidence.ts';
 
 interface Sensor {
   siteId: number;

@@ -1,4 +1,4 @@
-import type { Baseline, EvidenceReply } from '../../../shared/contracts/calibrations.ts';
+import type { Baseline, EvidenceReply } from '../../../shared/contracts/calibration-evidence.ts';
 import { baselineOf } from '../../../shared/rules/baseline.ts';
 import { correctionAt } from '../../../shared/rules/correction-steps.ts';
 import { fewestErrors } from '../../../shared/rules/health.ts';

@@ -1,11 +1,12 @@
 import { calibrations } from '../../../shared/contracts/calibrations.ts';
 import type { Context } from '../../context.ts';
 import { routesOf } from '../../http/front-door.ts';
+import { enterCalibration, withdrawCalibration } from './after.ts';
 import { confirmAsFound } from './confirm.ts';
 import { evidenceNow } from './evidence.ts';
 import { readRecord } from './record.ts';
 import { listCalibrations } from './repo.ts';
-import { decideCalibration, enterCalibration, proposeCalibration, withdrawCalibration } from './service.ts';
+import { decideCalibration, proposeCalibration } from './service.ts';
 
 export const calibrationRoutes = (context: Context) =>
   routesOf(context, calibrations, {

@@ -32,7 +32,6 @@ const refusals: Record<DecisionRefusal, string> = {
 };
 
 const longestAheadMs = 31 * 86_400_000;
-const clockSkewMs = 10 * 60_000;
 
 /** Proposes what the evidence shows now; it is frozen with the proposal. */
 export async function proposeCalibration(
@@ -162,7 +161,7 @@ export async function decideCalibration(
   });
 }
 
-function refuseDecided({ number, decision }: CalibrationRow): void {
+export function refuseDecided({ number, decision }: CalibrationRow): void {
   if (decision !== null) throw new AppError('conflict', `Recalibration ${number} was ${decision} already.`);
 }
 
@@ -196,66 +195,4 @@ function startOf(wanted: string | null, now: Date): Date {
     throw say('At most 31 days ahead: what is true of today’s samples may not be true then.');
   }
   return at;
-}
-
-export async function withdrawCalibration(
-  context: Context,
-  by: By,
-  row: Permitted<CalibrationRow>,
-): Promise<Calibration> {
-  return context.db.transaction(async (tx) => {
-    const calibration = await lockRow(tx, 'calibration', row);
-    refuseDecided(calibration);
-    const sensor = (await findSensor(tx, row.siteId, row.softSensorId))!;
-    await tx
-      .update(calibrations)
-      .set({ decision: 'withdrawn', decidedAt: context.clock(), decidedBy: by.actor.id })
-      .where(eq(calibrations.id, calibration.id));
-    const after = { ...told(calibration), decision: 'withdrawn' };
-    await note(context, tx, by, sensor, 'change', 'recalibration', told(calibration), after);
-    return getCalibration(tx, calibration);
-  });
-}
-
-/** Notes who entered an approved correction in the control system, and when: it is in force from then on. */
-export async function enterCalibration(
-  context: Context,
-  by: By,
-  row: Permitted<CalibrationRow>,
-  body: Body<'calibrations.enter'>,
-): Promise<Calibration> {
-  return context.db.transaction(async (tx) => {
-    const calibration = await lockRow(tx, 'calibration', row);
-    const sensor = (await findSensor(tx, row.siteId, row.softSensorId))!;
-    if (calibration.decision !== 'approved' || !calibration.toBeEntered) {
-      throw new AppError(
-        'conflict',
-        'Only an approved correction of an external estimate is entered in a control system.',
-      );
-    }
-    if (calibration.enteredAt) {
-      throw new AppError(
-        'conflict',
-        `${calibration.enteredBy} entered recalibration ${calibration.number} already.`,
-      );
-    }
-    const enteredAt = new Date(body.enteredAt);
-    const say = (message: string) => invalidInput([{ path: 'enteredAt', message }]);
-    if (enteredAt < calibration.decidedAt!) throw say('It can’t have been entered before it was approved.');
-    if (enteredAt.getTime() > context.clock().getTime() + clockSkewMs) throw say('This time is yet to come.');
-    const values = { enteredBy: body.enteredBy, enteredAt };
-    await tx
-      .update(calibrations)
-      .set({
-        ...values,
-        enteredRecordedBy: by.actor.id,
-        enteredRecordedAt: context.clock(),
-        effectiveFrom: enteredAt,
-      })
-      .where(eq(calibrations.id, calibration.id));
-    await queueJudging(tx, sensor.siteId, sensor.id);
-    const after = { ...told(calibration), enteredBy: body.enteredBy, enteredAt: body.enteredAt };
-    await note(context, tx, by, sensor, 'change', 'recalibration', told(calibration), after);
-    return getCalibration(tx, calibration);
-  });
 }

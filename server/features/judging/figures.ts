@@ -1,4 +1,4 @@
-import type { Baseline } from '../../../shared/contracts/calibrations.ts';
+import type { Baseline } from '../../../shared/contracts/calibration-evidence.ts';
 import type { ErrorStripPoint, Health, PairedError } from '../../../shared/contracts/judging.ts';
 import { allowedErrorAt } from '../../../shared/rules/allowed-error.ts';
 import { type CorrectionStep, corrected, correctionAt } from '../../../shared/rules/correction-steps.ts';

@@ -1,4 +1,5 @@
-import type { Calibration, CalibrationKind } from '../../../shared/contracts/calibrations.ts';
+import type { CalibrationKind } from '../../../shared/contracts/calibration-evidence.ts';
+import type { Calibration } from '../../../shared/contracts/calibrations.ts';
 import type { Sheet } from '../../../shared/contracts/register.ts';
 import { formatDate, formatInstant } from '../../../shared/rules/format.ts';
 import { correctionWords, kindWords } from '../../../shared/rules/recalibration-sentences.ts';

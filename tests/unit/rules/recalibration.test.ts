@@ -6,7 +6,7 @@ import {
 } from '../../../shared/rules/recalibration.ts';
 import * as words from '../../../shared/rules/recalibration-sentences.ts';
 import { randomFrom } from '../../../seeds/random.ts';
-import type { CalibrationEvidence, Correction } from '../../../shared/contracts/calibrations.ts';
+import type { CalibrationEvidence, Correction } from '../../../shared/contracts/calibration-evidence.ts';
 
 const hour = 3_600_000;
 const start = Date.UTC(2026, 8, 1);

@@ -1,0 +1,111 @@
+import { debutaniser } from '../physics/debutaniser.ts';
+import type { DemoUnit } from '../simulation/unit.ts';
+
+const site = 'Kallara Refinery';
+const minuteMs = 60_000;
+const dayMs = 86_400_000;
+
+export const lightEnds: DemoUnit = {
+  site,
+  area: 'Light ends',
+  name: 'Debutaniser',
+  model: debutaniser,
+  drives: {
+    upper: { mean: 53.6, slow: 0.45, hours: 20 },
+    lower: { mean: 82, slow: 0.7, hours: 20 },
+    pressure: { mean: 4.95, slow: 0.03, hours: 12, daily: 0.02 },
+    reflux: { mean: 1.5, slow: 0.05, hours: 24 },
+    feed: { mean: 120, slow: 3, hours: 24 },
+  },
+  instruments: [
+    { tag: 'TI-7201', description: 'Upper control tray', unit: '°C', reads: 'upper', noise: 0.03, digits: 2 },
+    {
+      tag: 'TI-7202',
+      description: 'Lower control tray',
+      unit: '°C',
+      reads: 'lower',
+      noise: 0.05,
+      digits: 2,
+      fault: { kind: 'stuck', fromDay: 162 },
+    },
+    {
+      tag: 'PI-7203',
+      description: 'Column pressure',
+      unit: 'bar',
+      reads: 'pressure',
+      noise: 0.003,
+      digits: 3,
+    },
+    { tag: 'FI-7204', description: 'Reflux ratio', unit: '', reads: 'reflux', noise: 0.01, digits: 2 },
+    { tag: 'FI-7205', description: 'Feed flow', unit: 'm³/h', reads: 'feed', noise: 0.5, digits: 1 },
+  ],
+  sensors: [
+    {
+      truth: 'pentane',
+      estimate: { inputs: ['TI-7201', 'PI-7203', 'FI-7204'] },
+      sampling: {
+        point: 'C4-71',
+        method: {
+          name: 'Gas chromatography',
+          repeatability: 0.06,
+          reproducibility: 0.12,
+          detectionLimit: 0.25,
+        },
+        everyHours: 8,
+        firstHour: 5,
+        reportedAfterHours: 3,
+        digits: 2,
+      },
+      life: 'in-service',
+      owner: 'engineer',
+      deputy: 'deputy',
+      approver: 'manager',
+      sheet: {
+        tagName: 'AY-7210',
+        name: 'Pentane in overhead',
+        quantity: 'composition',
+        unit: 'mol%',
+        decimals: 2,
+        importanceClass: 'A',
+        consumers: [{ kind: 'closed-loop', name: 'reflux' }],
+        purpose: 'Holds pentane in the butane below its limit through the reflux.',
+        allowedErrorAbsolute: 0.08,
+        transportDelayMs: 30 * minuteMs,
+        promisedReferenceMs: 2 * dayMs,
+        fallback: 'Hold the reflux at the last value and ask for a sample each shift.',
+        limitations: 'Compensated for pressure between 4.7 and 5.2 bar.',
+      },
+    },
+    {
+      truth: 'vapourPressure',
+      estimate: { inputs: ['TI-7202', 'PI-7203'] },
+      sampling: {
+        point: 'NA-72',
+        method: { name: 'Vapour pressure at 37.8 °C', repeatability: 1, reproducibility: 1.8 },
+        everyHours: 12,
+        firstHour: 5,
+        reportedAfterHours: 3,
+        digits: 1,
+      },
+      life: 'in-service',
+      owner: 'refineryEngineer',
+      deputy: 'deputy',
+      approver: 'refineryManager',
+      sheet: {
+        tagName: 'AY-7212',
+        name: 'Vapour pressure of bottoms',
+        quantity: 'pressure',
+        unit: 'kPa',
+        decimals: 1,
+        importanceClass: 'B',
+        consumers: [{ kind: 'display', name: 'control room' }],
+        purpose: 'Shows how much butane goes to gasoline.',
+        allowedErrorAbsolute: 1,
+        transportDelayMs: 30 * minuteMs,
+        promisedReferenceMs: 3 * dayMs,
+        fallback: 'Use the laboratory value.',
+        limitations: '',
+      },
+    },
+  ],
+};

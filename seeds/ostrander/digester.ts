@@ -1,0 +1,153 @@
+import { digester } from '../physics/digester.ts';
+import type { DemoUnit } from '../simulation/unit.ts';
+
+const site = 'Ostrander Mill';
+const minuteMs = 60_000;
+const dayMs = 86_400_000;
+const people = { deputy: 'deputy', approver: 'manager' } as const;
+
+export const continuousDigester: DemoUnit = {
+  site,
+  area: 'Fibre line',
+  name: 'Digester 1',
+  model: digester,
+  drives: {
+    chips: { mean: 60, slow: 1, hours: 30, levels: { values: [-2, 0, 2], days: 4 } },
+    cooking: { mean: 165, slow: 0.35, hours: 20 },
+    alkali: { mean: 19, slow: 0.4, hours: 14 },
+    liquor: { mean: 4, slow: 0.06, hours: 30 },
+    lignin: { mean: 27, slow: 0.12, hours: 50 },
+  },
+  instruments: [
+    { tag: 'FI-1210', description: 'Chips', unit: 't/h', reads: 'chips', noise: 0.2, digits: 1 },
+    {
+      tag: 'TI-1211',
+      description: 'Cooking temperature',
+      unit: '°C',
+      reads: 'cooking',
+      noise: 0.04,
+      digits: 2,
+    },
+    {
+      tag: 'FI-1212',
+      description: 'Alkali charge',
+      unit: '% on wood',
+      reads: 'alkali',
+      noise: 0.05,
+      digits: 2,
+    },
+    {
+      tag: 'QI-1213',
+      description: 'Conductivity of extraction liquor',
+      unit: 'mS/cm',
+      reads: 'conductivity',
+      noise: 0.2,
+      digits: 1,
+    },
+    {
+      tag: 'TI-1214',
+      description: 'Extraction temperature',
+      unit: '°C',
+      reads: 'extraction',
+      noise: 0.05,
+      digits: 2,
+    },
+  ],
+  sensors: [
+    {
+      truth: 'kappa',
+      estimate: { inputs: ['TI-1211', 'FI-1210', 'FI-1212', 'QI-1213'] },
+      sampling: {
+        point: 'Blow line',
+        method: { name: 'Kappa number by permanganate', repeatability: 1, reproducibility: 1.8 },
+        everyHours: 8,
+        firstHour: 7,
+        reportedAfterHours: 2,
+        digits: 1,
+        // A new permanganate procedure since day 148 gives results lower by this much.
+        change: { fromDay: 148, by: -1.2 },
+      },
+      life: 'in-service',
+      owner: 'pulpEngineer',
+      ...people,
+      sheet: {
+        tagName: 'AY-1201',
+        name: 'Kappa number at the blow line',
+        quantity: 'kappa number',
+        unit: '',
+        decimals: 1,
+        importanceClass: 'A',
+        consumers: [{ kind: 'closed-loop', name: 'cooking temperature' }],
+        purpose: 'Trims the cooking temperature before the laboratory can answer.',
+        allowedErrorAbsolute: 1.4,
+        transportDelayMs: 60 * minuteMs,
+        promisedReferenceMs: 2 * dayMs,
+        fallback: 'Cook to the H-factor table.',
+        limitations: 'Softwood only.',
+      },
+    },
+    {
+      truth: 'residual',
+      // Somebody types in every difference to the laboratory, whole, and so chases its noise.
+      estimate: { external: { wander: 0.15, hours: 20, noise: 0.08, chasedFromDay: 130 } },
+      sampling: {
+        point: 'Extraction liquor',
+        method: { name: 'Residual alkali by titration', repeatability: 0.8, reproducibility: 1.3 },
+        everyHours: 8,
+        firstHour: 7,
+        reportedAfterHours: 2,
+        digits: 2,
+      },
+      life: 'in-service',
+      owner: 'engineer',
+      ...people,
+      allowedSpread: 1.2,
+      sheet: {
+        tagName: 'AY-1204',
+        name: 'Residual alkali in extraction liquor',
+        quantity: 'concentration',
+        unit: 'g/L',
+        decimals: 1,
+        importanceClass: 'B',
+        consumers: [{ kind: 'display', name: 'control room' }],
+        purpose: 'Warns before the alkali runs out and lignin settles on the fibres again.',
+        allowedErrorAbsolute: 0.7,
+        transportDelayMs: 0,
+        promisedReferenceMs: 3 * dayMs,
+        fallback: 'Use the titration of the shift.',
+        limitations:
+          'Computed in the control system from conductivity; operators may enter a correction there.',
+      },
+    },
+    {
+      truth: 'kappa',
+      estimate: { inputs: ['TI-1214', 'QI-1213'] },
+      sampling: {
+        point: 'Washer vat',
+        method: { name: 'Kappa number by permanganate', repeatability: 1, reproducibility: 1.8 },
+        everyHours: 24,
+        firstHour: 11,
+        reportedAfterHours: 3,
+        digits: 1,
+      },
+      life: 'suspended',
+      owner: 'pulpEngineer',
+      ...people,
+      sheet: {
+        tagName: 'AY-1207',
+        name: 'Kappa number, old formula',
+        quantity: 'kappa number',
+        unit: '',
+        decimals: 1,
+        importanceClass: 'C',
+        consumers: [{ kind: 'display', name: 'washer panel' }],
+        purpose: 'The formula before the present one; still shown at the washers.',
+        allowedErrorAbsolute: 2,
+        transportDelayMs: 60 * minuteMs,
+        promisedReferenceMs: 4 * dayMs,
+        fallback: 'Use AY-1201.',
+        limitations: 'Knows nothing of the chip rate.',
+      },
+    },
+  ],
+};

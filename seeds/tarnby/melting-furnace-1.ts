@@ -1,0 +1,147 @@
+import { glassFurnace } from '../physics/glass-furnace.ts';
+import type { DemoUnit } from '../simulation/unit.ts';
+import { crown, furnaceDrives, pyrometry, temperature } from './temperatures.ts';
+
+const site = 'Tarnby Works';
+const dayMs = 86_400_000;
+
+export const furnace1: DemoUnit = {
+  site,
+  area: 'Hot end',
+  name: 'Melting furnace 1',
+  model: glassFurnace({
+    radiatingArea: 30.6,
+    crown: 972,
+    shell: 4607,
+    bath: 1300,
+    bottom: 1500,
+    throat: 350,
+  }),
+  drives: furnaceDrives(1430, 210),
+  instruments: [
+    {
+      tag: 'TI-1401',
+      description: 'Crown shell temperature',
+      unit: '°C',
+      reads: 'crownShell',
+      noise: 0.25,
+      digits: 1,
+      // An ageing thermocouple: reads a little higher every day, for the last five weeks.
+      fault: { kind: 'rise', fromDay: 143, perDay: 0.15, most: 12 },
+    },
+    { tag: 'FI-1410', description: 'Fuel gas flow', unit: 'Nm³/h', reads: 'fuel', noise: 2, digits: 0 },
+    {
+      tag: 'AI-1411',
+      description: 'Oxygen in waste gas',
+      unit: '%',
+      reads: 'oxygen',
+      noise: 0.02,
+      digits: 2,
+    },
+    { tag: 'FI-1412', description: 'Glass pull', unit: 't/d', reads: 'pull', noise: 0.5, digits: 1 },
+    {
+      tag: 'TI-1403',
+      description: 'Throat shell temperature',
+      unit: '°C',
+      reads: 'throatShell',
+      noise: 0.1,
+      digits: 1,
+      // Replaced by one of another batch; the correction of day 112 takes care of it.
+      fault: { kind: 'step', fromDay: 96, by: 1.8 },
+    },
+    {
+      tag: 'TI-1407',
+      description: 'Bottom shell temperature',
+      unit: '°C',
+      reads: 'bottomShell',
+      noise: 0.1,
+      digits: 1,
+    },
+    {
+      tag: 'TI-1404',
+      description: 'Waste gas temperature',
+      unit: '°C',
+      reads: 'flue',
+      noise: 0.5,
+      digits: 1,
+    },
+  ],
+  sensors: [
+    {
+      ...crown('KX-09', ['TI-1401', 'FI-1410', 'AI-1411', 'TI-1404']),
+      life: 'in-service',
+      owner: 'engineer',
+      deputy: 'deputy',
+      approver: 'manager',
+      sheet: {
+        ...temperature,
+        tagName: 'TY-1402',
+        name: 'Crown interior temperature',
+        importanceClass: 'A',
+        consumers: [
+          { kind: 'closed-loop', name: 'furnace pressure loop' },
+          { kind: 'display', name: 'control room' },
+        ],
+        purpose: 'Holds the crown below its refractory limit through the furnace pressure loop.',
+        allowedErrorAbsolute: 6,
+        fallback: 'Use the last pyrometer reading and hold the loop in manual.',
+        limitations: 'Not valid while the regenerators change over.',
+      },
+    },
+    {
+      truth: 'throat',
+      estimate: { inputs: ['TI-1403', 'FI-1412', 'TI-1404'] },
+      sampling: {
+        point: 'KX-11',
+        method: pyrometry,
+        everyHours: 12,
+        firstHour: 7,
+        reportedAfterHours: 2,
+        digits: 1,
+      },
+      life: 'in-service',
+      owner: 'engineer',
+      deputy: 'glassEngineer',
+      approver: 'glassManager',
+      sheet: {
+        ...temperature,
+        tagName: 'TY-1405',
+        name: 'Throat glass temperature',
+        importanceClass: 'B',
+        consumers: [{ kind: 'display', name: 'control room' }],
+        purpose: 'Tells the forehearth operators what is coming.',
+        allowedErrorAbsolute: 5,
+        fallback: 'Use the last pyrometer reading.',
+        limitations: '',
+      },
+    },
+    {
+      truth: 'bottom',
+      estimate: { external: { wander: 1.5, hours: 30, noise: 0.6 } },
+      sampling: {
+        point: 'KX-12',
+        method: pyrometry,
+        everyHours: 24,
+        firstHour: 9,
+        reportedAfterHours: 3,
+        digits: 1,
+      },
+      life: 'in-service',
+      owner: 'glassEngineer',
+      deputy: 'engineer',
+      approver: 'glassManager',
+      sheet: {
+        ...temperature,
+        tagName: 'TY-1408',
+        name: 'Bottom glass temperature',
+        importanceClass: 'C',
+        consumers: [{ kind: 'display', name: 'furnace report' }],
+        purpose: 'Watches the paving; computed in the control system.',
+        allowedErrorAbsolute: 5,
+        promisedReferenceMs: 4 * dayMs,
+        fallback: 'Use the bottom shell temperature as a trend.',
+        limitations: 'Computed by the furnace control system; its formula is kept there.',
+      },
+    },
+  ],
+};
