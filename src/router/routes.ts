@@ -36,10 +36,22 @@ export const routes: RouteRecordRaw[] = [
         meta: { title: 'Register a soft sensor' },
       },
       {
-        path: 'register/:id(\\d+)/:tab(estimate|model|replays|samples|sheet|changes)?',
+        path: 'register/:id(\\d+)/:tab(estimate|recalibration|model|replays|samples|events|sheet|changes)?',
         name: 'sheet',
         component: () => import('../pages/register/SheetPage.vue'),
         meta: { title: 'Data sheet' },
+      },
+      {
+        path: 'calibrations/:id(\\d+)',
+        name: 'calibration',
+        component: () => import('../pages/calibrations/CalibrationPage.vue'),
+        meta: { title: 'Recalibration' },
+      },
+      {
+        path: 'sites/:siteId(\\d+)/events',
+        name: 'events',
+        component: () => import('../pages/events/EventsPage.vue'),
+        meta: { title: 'Events' },
       },
       {
         path: 'replays/:id(\\d+)',
@@ -64,6 +76,12 @@ export const routes: RouteRecordRaw[] = [
         name: 'sample-points',
         component: () => import('../pages/samples/SamplePointsPage.vue'),
         meta: { title: 'Sample points and methods' },
+      },
+      {
+        path: 'duties',
+        name: 'duties',
+        component: () => import('../pages/duties/DutiesPage.vue'),
+        meta: { title: 'Duties' },
       },
       {
         path: 'history',

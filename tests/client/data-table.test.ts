@@ -130,6 +130,20 @@ describe('a data table', () => {
     expect(part.get('[aria-busy=true]').attributes('aria-label')).toBe('Loading soft sensors');
   });
 
+  test('keeps one line above each group however the filter changes', async () => {
+    const many = ['melting', 'refining', 'lime kiln 2'].flatMap((area) =>
+      ['AY', 'TY'].map((kind): Row => ({ tag: `${kind} ${area}`, bias: 1, owner: '', area })),
+    );
+    const part = table({ rows: many, groupOf: (row: Row) => row.area });
+    for (const filter of ['AY', 'AY lime', 'AY', 'TY', '']) {
+      await part.setProps({ filter });
+      await nextTick();
+      const groups = part.findAll('tr.group').map((group) => group.text());
+      const wanted = filter === 'AY lime' ? ['lime kiln 2'] : ['melting', 'refining', 'lime kiln 2'];
+      expect(groups, filter).toEqual(wanted);
+    }
+  });
+
   test('gathers groups under a ruled line, also when sorted', async () => {
     const part = table({ groupOf: (row: Row) => row.area });
     const lines = () => part.findAll('tbody tr').map((row) => row.find('th, td').text());

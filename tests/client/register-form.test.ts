@@ -90,12 +90,13 @@ describe('the form of a data sheet', () => {
   });
 
   test('sets intervals by class, but not one that a person changed', () => {
-    const form = { ...blankForm(), reviewMonths: '9' };
+    const nine = { ...blankForm().reviewInterval, every: '9' };
+    const form = { ...blankForm(), reviewInterval: nine };
     const asA = withClass(form, 'A');
     expect(asA).toMatchObject({
       importanceClass: 'A',
-      recalibrationMonths: '3',
-      reviewMonths: '9',
+      recalibrationInterval: { every: '3', unit: 'months' },
+      reviewInterval: nine,
       promisedReferenceMs: { amount: '2', per: 'd' },
     });
     const touched = withClass({ ...form, promisedReferenceMs: { amount: '36', per: 'h' } }, 'C');

@@ -38,6 +38,8 @@ const status: NonNullable<Sheet['status']> = {
   currentValue: 1528.4,
   currentSd: 2.4,
   judgedAt: '2026-12-01T06:00:00.000Z',
+  recalibratedAt: null,
+  referencesSince: 12,
 };
 const sheet: Sheet = { ...exampleSheet, status };
 

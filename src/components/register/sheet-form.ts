@@ -1,6 +1,8 @@
 import type { z } from 'zod';
+import type { Interval } from '../../../shared/contracts/interval.ts';
 import { sheetBody, type Consumer, type SheetFields } from '../../../shared/contracts/register.ts';
 import { readDuration, splitDuration, type DurationText } from './durations.ts';
+import { readInterval, splitInterval, type IntervalText } from './intervals.ts';
 import { numberText, readNumber } from './number-text.ts';
 
 const numberFields = [
@@ -11,8 +13,6 @@ const numberFields = [
   'allowedSpread',
   'decimals',
   'updateFactor',
-  'recalibrationMonths',
-  'reviewMonths',
 ] as const;
 const durationFields = [
   'transportDelayMs',
@@ -20,14 +20,17 @@ const durationFields = [
   'promisedReferenceMs',
   'historyEveryMs',
 ] as const;
+const intervalFields = ['recalibrationInterval', 'reviewInterval'] as const;
 type NumberField = (typeof numberFields)[number];
 type DurationField = (typeof durationFields)[number];
+type IntervalField = (typeof intervalFields)[number];
 
 /** A data sheet as it is typed: figures and durations as texts, so that nothing is lost while it can't be read yet. */
-export type SheetForm = Omit<SheetFields, NumberField | DurationField | 'unitId'> & {
+export type SheetForm = Omit<SheetFields, NumberField | DurationField | IntervalField | 'unitId'> & {
   unitId: number | null;
 } & Record<NumberField, string> &
-  Record<DurationField, DurationText>;
+  Record<DurationField, DurationText> &
+  Record<IntervalField, IntervalText>;
 
 export type SheetErrors = Record<string, string>;
 export type ImportanceClass = SheetFields['importanceClass'];
@@ -35,14 +38,13 @@ export type ImportanceClass = SheetFields['importanceClass'];
 const hour = 3_600_000;
 const day = 24 * hour;
 
+const months = (every: number): Interval => ({ every, unit: 'months', counted: 'last-done', anchorOn: null });
+
 /** What usually holds for a class (common practice, no source); a person may change each. */
-const classDefaults: Record<
-  ImportanceClass,
-  Pick<SheetFields, 'promisedReferenceMs' | 'recalibrationMonths' | 'reviewMonths'>
-> = {
-  A: { promisedReferenceMs: 2 * day, recalibrationMonths: 3, reviewMonths: 12 },
-  B: { promisedReferenceMs: 7 * day, recalibrationMonths: 6, reviewMonths: 12 },
-  C: { promisedReferenceMs: 28 * day, recalibrationMonths: 12, reviewMonths: 24 },
+const classDefaults: Record<ImportanceClass, Pick<SheetFields, 'promisedReferenceMs' | IntervalField>> = {
+  A: { promisedReferenceMs: 2 * day, recalibrationInterval: months(3), reviewInterval: months(12) },
+  B: { promisedReferenceMs: 7 * day, recalibrationInterval: months(6), reviewInterval: months(12) },
+  C: { promisedReferenceMs: 28 * day, recalibrationInterval: months(12), reviewInterval: months(24) },
 };
 
 export function blankForm(): SheetForm {
@@ -82,27 +84,31 @@ export function blankForm(): SheetForm {
 export function toForm(fields: SheetFields): SheetForm {
   const numbers = Object.fromEntries(numberFields.map((name) => [name, numberText(fields[name])]));
   const durations = Object.fromEntries(durationFields.map((name) => [name, splitDuration(fields[name])]));
+  const intervals = Object.fromEntries(intervalFields.map((name) => [name, splitInterval(fields[name])]));
   return {
     ...fields,
     consumers: fields.consumers.map((consumer) => ({ ...consumer })),
     unitId: fields.unitId === 0 ? null : fields.unitId,
     ...(numbers as Record<NumberField, string>),
     ...(durations as Record<DurationField, DurationText>),
+    ...(intervals as Record<IntervalField, IntervalText>),
   };
 }
 
 /** Changes the class, and with it the intervals that still stand as the class before had them. */
 export function withClass(form: SheetForm, importanceClass: ImportanceClass): SheetForm {
   const [before, after] = [classDefaults[form.importanceClass], classDefaults[importanceClass]];
-  const months = (field: 'recalibrationMonths' | 'reviewMonths') =>
-    form[field].trim() === String(before[field]) ? String(after[field]) : form[field];
+  const interval = (field: IntervalField) =>
+    JSON.stringify(form[field]) === JSON.stringify(splitInterval(before[field]))
+      ? splitInterval(after[field])
+      : form[field];
   const promised = readDuration(form.promisedReferenceMs);
   const untouched = 'ms' in promised && promised.ms === before.promisedReferenceMs;
   return {
     ...form,
     importanceClass,
-    recalibrationMonths: months('recalibrationMonths'),
-    reviewMonths: months('reviewMonths'),
+    recalibrationInterval: interval('recalibrationInterval'),
+    reviewInterval: interval('reviewInterval'),
     promisedReferenceMs: untouched ? splitDuration(after.promisedReferenceMs) : form.promisedReferenceMs,
   };
 }
@@ -115,8 +121,6 @@ export function classFor(consumers: readonly Consumer[]): ImportanceClass {
 const needed: Partial<Record<NumberField, string>> = {
   decimals: 'Write how many decimals are shown, 0 to 6.',
   updateFactor: 'Write a factor above 0, at most 1.',
-  recalibrationMonths: 'Write after how many months.',
-  reviewMonths: 'Write after how many months.',
 };
 
 /** What is typed as a sheet to be saved, or a sentence for each field that can't be used. */
@@ -135,14 +139,27 @@ export function readForm(form: SheetForm): { fields: SheetFields } | { errors: S
     if ('wrong' in read) errors[name] = read.wrong;
     else values[name] = read.ms;
   }
+  for (const name of intervalFields) {
+    const read = readInterval(form[name]);
+    if ('interval' in read) values[name] = read.interval;
+    else {
+      values[name] = standIn[name];
+      for (const [part, says] of Object.entries(read.wrong)) say(errors, [name, part], says);
+    }
+  }
   const parsed = sheetBody.safeParse(values);
   if (parsed.success && Object.keys(errors).length === 0) return { fields: parsed.data };
   const found = parsed.error?.issues ?? [];
   for (const issue of [...found, ...issuesBetweenFields(values, found)]) {
-    errors[issue.path.join('.')] ??= issue.message;
-    errors[String(issue.path[0])] ??= issue.message;
+    say(errors, issue.path, issue.message);
   }
   return { errors };
+}
+
+/** Beside the part at fault, and for the field that it belongs to. */
+function say(errors: SheetErrors, path: readonly PropertyKey[], message: string) {
+  errors[path.join('.')] ??= message;
+  errors[String(path[0])] ??= message;
 }
 
 /** What any sheet could hold where a field can't be read yet. */
@@ -162,8 +179,8 @@ const standIn: Partial<SheetFields> = {
   promisedReferenceMs: 1,
   historyEveryMs: 1,
   updateFactor: 1,
-  recalibrationMonths: 1,
-  reviewMonths: 1,
+  recalibrationInterval: months(1),
+  reviewInterval: months(1),
 };
 
 /** Rules between fields are only asked of fields that can be read, so those at fault are stood in for. */

@@ -1,6 +1,7 @@
 import type { Consumer, LifeState, SheetFields } from '../../../shared/contracts/register.ts';
 import { formatNumber, formatQuantity } from '../../../shared/rules/format.ts';
 import { sayDuration } from './durations.ts';
+import { intervalWords } from './intervals.ts';
 
 export const fieldLabels: Record<keyof SheetFields, string> = {
   unitId: 'Unit of plant',
@@ -27,8 +28,8 @@ export const fieldLabels: Record<keyof SheetFields, string> = {
   historyEveryMs: 'History every',
   correctionMode: 'Corrections',
   updateFactor: 'Update factor',
-  recalibrationMonths: 'Recalibration every',
-  reviewMonths: 'Review every',
+  recalibrationInterval: 'Recalibration every',
+  reviewInterval: 'Review every',
   fallback: 'When the estimate is bad',
   limitations: 'Known limitations and cautions',
   ownerId: 'Owner',
@@ -120,9 +121,9 @@ export function sayField(field: keyof SheetFields, fields: SheetFields, nameOf: 
     case 'promisedReferenceMs':
     case 'historyEveryMs':
       return sayDuration(Number(value));
-    case 'recalibrationMonths':
-    case 'reviewMonths':
-      return value === 1 ? '1 month' : `${String(value)} months`;
+    case 'recalibrationInterval':
+    case 'reviewInterval':
+      return intervalWords(fields[field]);
     case 'allowedErrorPercent':
       return `${formatNumber(Number(value), digitsOf(Number(value)))}\u00a0%`;
     case 'rangeLow':

@@ -27,6 +27,10 @@ const wanted: Record<Action, string> = {
   'softSensor.replay': 'engineer manager',
   'softSensor.approve': 'engineer manager',
   'softSensor.suspend': 'engineer technician manager',
+  'softSensor.recalibrate': 'engineer',
+  'softSensor.nameOwner': 'engineer manager',
+  'duty.attend': 'engineer manager',
+  'events.record': 'engineer manager technician',
 };
 
 describe('who may do what', () => {
