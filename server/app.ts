@@ -7,8 +7,11 @@ import { AppError, toProblem } from '../shared/contracts/errors.ts';
 import { createSessions } from './auth/sessions.ts';
 import type { Context } from './context.ts';
 import { auditRoutes } from './features/audit/routes.ts';
+import { dutyRoutes } from './features/duties/routes.ts';
+import { ownershipRoutes } from './features/ownership/routes.ts';
 import { boardRoutes } from './features/board/routes.ts';
 import { calibrationRoutes } from './features/calibrations/routes.ts';
+import { eventRoutes } from './features/events/routes.ts';
 import { judgingRoutes } from './features/judging/routes.ts';
 import { historyRoutes } from './features/history/routes.ts';
 import { mailRoutes } from './features/mail/routes.ts';
@@ -74,7 +77,10 @@ const features = [
   runRoutes,
   registerRoutes,
   judgingRoutes,
+  eventRoutes,
   calibrationRoutes,
+  dutyRoutes,
+  ownershipRoutes,
   boardRoutes,
   mailRoutes,
   auditRoutes,

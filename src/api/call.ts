@@ -61,13 +61,14 @@ export function upload<N extends UploadName>(
   params: Given<Endpoints[N], 'params'>,
   file: File,
   onProgress: (share: number) => void = () => {},
+  query: Values = undefined,
 ): Promise<Wire<Endpoints[N]>> {
   const [method, path] = addresses[name]!;
   const form = new FormData();
   form.append('file', file, file.name);
   return new Promise((resolve, reject) => {
     const request = new XMLHttpRequest();
-    request.open(method, addressOf(path, params as Values, undefined));
+    request.open(method, addressOf(path, params as Values, query));
     request.upload.onprogress = (event) => onProgress(event.total > 0 ? event.loaded / event.total : 0);
     request.onerror = () => reject(ApiProblem.offline());
     request.onload = () => {

@@ -79,6 +79,10 @@ function tries(): Try[] {
     ...sheet({ unitId, methodId: foreign.methodId }, 'methodId'),
     ...sheet({ unitId, ownerId: foreignPersonId }, 'ownerId'),
     ...sheet({ unitId, approverId: foreignPersonId }, 'approverId'),
+    ...(['unitId', 'softSensorId'] as const).map((field): Try => {
+      const body = { kind: 'stop', at: '2026-11-01T06:00:00Z', [field]: foreign[field] };
+      return ['post', `${site}/events`, body, field];
+    }),
     ['put', `${sensor}/draft`, { model, version: 1 }, 'tagId'],
     [
       'post',
@@ -136,6 +140,7 @@ describe('ids of another site in a body', () => {
       `/sites/${own.siteId}/tags?unitId=${foreign.unitId}`,
       `/sites/${own.siteId}/samples?samplePointId=${foreign.samplePointId}`,
       `/sites/${own.siteId}/samples?importId=${foreign.sampleImportId}`,
+      `/sites/${own.siteId}/events?unitId=${foreign.unitId}`,
     ];
     for (const list of lists) {
       const answer = await engineer.get(`/api/v1${list}`).expect(200);

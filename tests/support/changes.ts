@@ -88,10 +88,11 @@ export const changes: Partial<Record<EndpointName, Send>> = {
   'runs.cancel': (s) => s.engineer.post(v1(`/runs/${s.runId}/cancel`)).send({}),
   'register.add': (s) =>
     s.engineer.post(v1(`/sites/${s.siteId}/soft-sensors`)).send(sheetFields({ unitId: s.unitId })),
-  'register.change': (s) =>
-    s.engineer
-      .put(v1(`/soft-sensors/${s.softSensorId}`))
-      .send({ fields: sheetFields({ unitId: s.unitId, tagName: 'TY-9' }), version: 1 }),
+  'register.change': (s, ownerId) =>
+    s.engineer.put(v1(`/soft-sensors/${s.softSensorId}`)).send({
+      fields: sheetFields({ unitId: s.unitId, tagName: 'TY-9', ownerId: Number(ownerId) }),
+      version: 1,
+    }),
   'drafts.fit': (s) =>
     s.engineer.post(v1(`/soft-sensors/${s.softSensorId}/draft/fit`)).send({ ...period, version: 1 }),
   'drafts.save': (s) =>
@@ -104,8 +105,61 @@ export const changes: Partial<Record<EndpointName, Send>> = {
   'revisions.decide': (s, id) =>
     s.manager.post(v1(`/revisions/${id}/decision`)).send({ decision: 'approved', reason: '' }),
   'life.suspend': (s) =>
-    s.technician.post(v1(`/soft-sensors/${s.softSensorId}/suspension`)).send({ reason: 'Reads nonsense' }),
+    s.technician.post(v1(`/soft-sensors/${s.softSensorId}/suspension`)).send({ reason: '' }),
+  'life.reason': (s) =>
+    s.technician.put(v1(`/soft-sensors/${s.softSensorId}/suspension`)).send({ reason: 'Probe blocked' }),
   'life.putBack': (s) => s.manager.delete(v1(`/soft-sensors/${s.softSensorId}/suspension`)),
+  'calibrations.withdraw': (s) => s.engineer.delete(v1(`/calibrations/${s.calibrationId}`)),
+  'calibrations.propose': (s, seen) =>
+    s.engineer
+      .post(v1(`/soft-sensors/${s.softSensorId}/calibrations`))
+      .send({ kind: 'bias', reason: 'Reads high', seen: JSON.parse(seen) }),
+  'calibrations.decide': (s, found) => {
+    const [id, ownerId] = found.split(' ');
+    const body = { decision: 'approved', reason: '', ownerId: Number(ownerId) || null, effectiveFrom: null };
+    return s.manager.post(v1(`/calibrations/${id}/decision`)).send(body);
+  },
+  'calibrations.enter': (s, found) => {
+    const [id] = found.split(' ');
+    const enteredAt = new Date().toISOString();
+    return s.engineer.post(v1(`/calibrations/${id}/entry`)).send({ enteredBy: 'Shift C', enteredAt });
+  },
+  'calibrations.confirm': (s) =>
+    s.engineer.post(v1('/confirmations')).send({ softSensorIds: [s.softSensorId] }),
+  'events.withdraw': (s) =>
+    s.technician.post(v1(`/events/${s.eventId}/withdrawal`)).send({ reason: 'The wrong unit' }),
+  'events.add': (s) =>
+    s.technician
+      .post(v1(`/sites/${s.siteId}/events`))
+      .send({ unitId: s.unitId, kind: 'grade-change', at: '2026-11-01T06:10:00Z', note: 'Clear glass' }),
+  'events.upload': (s, found) => {
+    const [outcome, unit] = found.split('|');
+    return sendEvents(s, unit!).query({ outcome });
+  },
+  'duties.reassign': (s, found) => {
+    const [id, version] = found.split(' ');
+    const body = { personId: s.engineer.personId, reason: '', version: Number(version) };
+    return s.manager.post(v1(`/duties/${id}/assignee`)).send(body);
+  },
+  'duties.waive': (s, found) => {
+    const [id, version] = found.split(' ');
+    const dueOn = new Date(Date.now() + 30 * 86_400_000).toISOString().slice(0, 10);
+    const body = { reason: 'Shut down until then', dueOn, version: Number(version) };
+    return s.manager.post(v1(`/duties/${id}/waiver`)).send(body);
+  },
+  'reviews.add': (s) => {
+    const answers = { purpose: true, consumers: true, inputs: true, validity: true, owner: true };
+    return s.engineer
+      .post(v1(`/soft-sensors/${s.softSensorId}/reviews`))
+      .send({ conclusion: 'keep', answers, note: '' });
+  },
+  'handovers.withdraw': (s) => s.manager.delete(v1(`/handovers/${s.handoverId}`)),
+  'handovers.propose': (s) =>
+    s.manager
+      .post(v1(`/soft-sensors/${s.softSensorId}/handovers`))
+      .send({ part: 'owner', toId: s.engineer.personId, reason: 'Looks after the furnace now' }),
+  'handovers.answer': (s, id) =>
+    s.engineer.post(v1(`/handovers/${id}/answer`)).send({ answer: 'accepted', reason: '' }),
   'replays.start': (s) =>
     s.engineer
       .post(v1(`/soft-sensors/${s.softSensorId}/replays`))
@@ -150,9 +204,38 @@ export const findings: Partial<Record<EndpointName, (scene: Scene) => Promise<st
     const link = await makeLink(context, context.db, 'reset-password', s.technician.personId);
     return link.split('#')[1]!;
   },
+  async 'register.change'(s) {
+    const { body } = await s.engineer.get(v1(`/soft-sensors/${s.softSensorId}`));
+    return String(body.fields.ownerId);
+  },
+  async 'events.upload'(s) {
+    const { body } = await s.engineer.get(v1(`/sites/${s.siteId}/units`));
+    const unit = body.rows[0].name;
+    return `${(await sendEvents(s, unit)).body.outcome}|${unit}`;
+  },
+  'duties.reassign': openReview,
+  'duties.waive': openReview,
+  async 'handovers.answer'(s) {
+    const { body } = await s.engineer.get(v1('/handovers'));
+    return String(body.toAnswer[0].id);
+  },
   async 'revisions.decide'(s) {
     const { body } = await s.engineer.get(v1(`/soft-sensors/${s.softSensorId}/revisions`));
     return String(body.rows[0].id);
+  },
+  async 'calibrations.propose'(s) {
+    await addPairedSamples(s);
+    const { body } = await s.engineer.get(v1(`/soft-sensors/${s.softSensorId}/recalibration`));
+    return JSON.stringify({ used: body.evidence?.used, to: body.evidence?.to });
+  },
+  'calibrations.decide': newestCalibration,
+  'calibrations.enter': newestCalibration,
+  async 'calibrations.confirm'(s) {
+    const { pool } = s.server.context;
+    await pool.query(`update soft_sensor_status set health = 'fit', in_service = true, references_since = 20
+      where soft_sensor_id = ${s.softSensorId}`);
+    await addPairedSamples(s);
+    return '';
   },
   'sampleImports.dryRun': (s) => newest(s, 'sample-imports'),
   async 'sampleImports.commit'(s) {
@@ -172,6 +255,37 @@ export const findings: Partial<Record<EndpointName, (scene: Scene) => Promise<st
     return id;
   },
 };
+
+/** Twenty counted pairs of an estimate that reads 2 high, taken from now on. */
+async function addPairedSamples(s: Scene): Promise<void> {
+  await s.server.context.pool.query(`
+    with taken as (
+      insert into samples (site_id, sample_point_id, sample_number, taken_at, reported_at, value, unit, as_written, entered_by, entered_at)
+      select ${s.siteId}, ${s.samplePointId}, 'P-' || i || '-' || clock_timestamp(), now() + i * interval '1 millisecond', now(), 300, '°C', '300',
+        ${s.engineer.personId}, now() from generate_series(1, 20) i returning *)
+    insert into pairs (site_id, soft_sensor_id, sample_id, taken_at, reported_at, reference, estimate, error, origin, computed_at)
+    select site_id, ${s.softSensorId}, id, taken_at, reported_at, 300, 302 + sin(id), 2 + sin(id), 'recorded', now() from taken`);
+}
+
+async function openReview(s: Scene): Promise<string> {
+  const { body } = await s.manager.get(v1('/duties')).query({ whose: 'sites', kind: 'review' });
+  return `${body.rows[0].id} ${body.rows[0].version}`;
+}
+
+async function newestCalibration(s: Scene): Promise<string> {
+  const { body } = await s.engineer.get(v1(`/soft-sensors/${s.softSensorId}/calibrations`));
+  const sheet = await s.engineer.get(v1(`/soft-sensors/${s.softSensorId}`));
+  return `${body.rows[0].id} ${sheet.body.fields.ownerId}`;
+}
+
+const sendEvents = (s: Scene, unit: string) =>
+  s.technician
+    .post(v1(`/sites/${s.siteId}/event-files`))
+    .attach(
+      'file',
+      Buffer.from(`unit,event,time\r\n${unit},method change,2026-11-01 09:00\r\n`),
+      'shift.csv',
+    );
 
 const newest = async (s: Scene, list: string): Promise<string> =>
   String((await s.engineer.get(v1(`/sites/${s.siteId}/${list}`))).body.rows[0].id);

@@ -1,9 +1,9 @@
 import { createHash } from 'node:crypto';
 import type { Readable } from 'node:stream';
-import { eq } from 'drizzle-orm';
+import { and, eq } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { Context } from '../../context.ts';
-import type { Db } from '../../db/client.ts';
+import type { Db, Queryable } from '../../db/client.ts';
 import { files } from '../../db/schema/index.ts';
 import { addChunk, addFile, chunkAt, firstChunk } from './repo.ts';
 
@@ -92,4 +92,12 @@ export async function readWholeFile(db: Db, key: FileKey): Promise<Buffer> {
 /** The first megabyte at most: enough to see what a file is. */
 export async function readHead(db: Db, key: FileKey): Promise<Buffer> {
   return (await firstChunk(db, key)) ?? Buffer.alloc(0);
+}
+
+/** Removes a file with its bytes: one that held nothing to keep, or whose content lives on elsewhere. */
+export async function dropFile(
+  db: Queryable,
+  { siteId, id }: Pick<StoredFile, 'siteId' | 'id'>,
+): Promise<void> {
+  await db.delete(files).where(and(eq(files.siteId, siteId), eq(files.id, id)));
 }

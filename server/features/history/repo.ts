@@ -3,7 +3,7 @@ import type { PgColumn } from 'drizzle-orm/pg-core';
 import type { HistoryRefusalCode } from '../../../shared/contracts/history.ts';
 import type { KnownTag } from '../../../shared/rules/history-proposal.ts';
 import type { Queryable } from '../../db/client.ts';
-import { files, historyImports, historyRefusals, persons, runs, tags } from '../../db/schema/index.ts';
+import { historyImports, historyRefusals, persons, runs, tags } from '../../db/schema/index.ts';
 
 export type ImportRow = typeof historyImports.$inferSelect;
 /** A tag as an import sees it. */
@@ -143,10 +143,6 @@ export async function listImportTags(db: Queryable, siteId: number): Promise<Imp
       order by r.effective_from desc limit 1
     ) = 'regression')`;
   return db.select({ id: tags.id, name: tags.name, computed }).from(tags).where(eq(tags.siteId, siteId));
-}
-
-export async function removeFile(db: Queryable, siteId: number, fileId: number): Promise<void> {
-  await db.delete(files).where(and(eq(files.siteId, siteId), eq(files.id, fileId)));
 }
 
 export async function addRefusals(

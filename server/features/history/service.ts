@@ -13,7 +13,7 @@ import type { StoredUpload } from '../../http/upload.ts';
 import { toWire } from '../../http/wire.ts';
 import { addJob } from '../../jobs/queue.ts';
 import { recordAudit } from '../audit/service.ts';
-import { readHead } from '../files/service.ts';
+import { dropFile, readHead } from '../files/service.ts';
 import { addRun } from '../runs/repo.ts';
 import { getSite } from '../sites/repo.ts';
 import { type HeadWishes, readHistoryHead } from './head.ts';
@@ -26,7 +26,6 @@ import {
   getImportView,
   listImportTags,
   listRefusals,
-  removeFile,
   setImport,
 } from './repo.ts';
 
@@ -44,7 +43,7 @@ export async function addUpload(
 ): Promise<{ import: HistoryImport; preview: HistoryPreview }> {
   const about = { siteId: site.id, fileId: file.id, fileSize: file.size };
   const head = await headOf(context, about, {}).catch(async (error: unknown) => {
-    await removeFile(context.db, site.id, file.id);
+    await dropFile(context.db, file);
     throw error;
   });
   const row = await context.db.transaction(async (tx) => {

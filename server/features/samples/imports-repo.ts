@@ -1,6 +1,6 @@
 import { and, desc, eq, ne } from 'drizzle-orm';
 import type { Queryable } from '../../db/client.ts';
-import { files, persons, sampleImports } from '../../db/schema/index.ts';
+import { persons, sampleImports } from '../../db/schema/index.ts';
 
 export type ImportRow = typeof sampleImports.$inferSelect;
 
@@ -70,8 +70,4 @@ export async function findSameFile(
     .orderBy(desc(sampleImports.committedAt))
     .limit(1);
   return same ? { importId: same.importId, at: same.at! } : null;
-}
-
-export async function dropFile(db: Queryable, siteId: number, fileId: number): Promise<void> {
-  await db.delete(files).where(and(eq(files.siteId, siteId), eq(files.id, fileId)));
 }

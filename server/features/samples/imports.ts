@@ -18,14 +18,8 @@ import { type Permitted, type SiteRow, lockRow } from '../../http/rows.ts';
 import type { StoredUpload } from '../../http/upload.ts';
 import { toWire } from '../../http/wire.ts';
 import { recordAudit } from '../audit/service.ts';
-import {
-  type ImportRow,
-  addImport,
-  dropFile,
-  findSameFile,
-  getImportView,
-  setImport,
-} from './imports-repo.ts';
+import { dropFile } from '../files/service.ts';
+import { type ImportRow, addImport, findSameFile, getImportView, setImport } from './imports-repo.ts';
 import { type DryRun, loadRegistry, readText, refuseForeign, runDry, unreadable } from './reading.ts';
 
 export interface By {
@@ -58,7 +52,7 @@ export async function addUpload(
       return await assemble(tx, row, preview, { mapping, dry });
     });
   } catch (error) {
-    await dropFile(context.db, site.id, file.id);
+    await dropFile(context.db, file);
     throw error;
   }
 }
