@@ -13,6 +13,7 @@ export interface Jobs {
   replay: { siteId: number; replayId: number; runId: number };
   'unlock-dead-workers': Record<string, never>;
   'clean-up': Record<string, never>;
+  remind: Record<string, never>;
 }
 export type JobName = keyof Jobs;
 
@@ -22,7 +23,8 @@ export interface JobOptions {
   /** Jobs of one queue run one after the other. */
   queue?: string;
   maxAttempts?: number;
-  runAt?: Date;
+  /** Not before this long from now, by the database’s clock. */
+  delayMs?: number;
 }
 
 /** Adds a job in the caller's transaction: rolled back with it, seen by workers when it commits. */
@@ -36,7 +38,7 @@ export async function addJob<N extends JobName>(
     ${name},
     ${JSON.stringify(payload)}::json,
     queue_name := ${options.queue ?? null}::text,
-    run_at := coalesce(${options.runAt?.toISOString() ?? null}::timestamptz, now()),
+    run_at := now() + ${options.delayMs ?? 0}::float8 * interval '1 millisecond',
     max_attempts := ${options.maxAttempts ?? 5}::int,
     job_key := ${options.key ?? null}::text
   )`);

@@ -1,5 +1,6 @@
 import type { JobHelpers, TaskList } from 'graphile-worker';
 import type { Context } from '../context.ts';
+import { remind } from '../features/duties/remind.ts';
 import { importHistory } from '../features/history/import.ts';
 import { rollUp } from '../features/history/roll-up.ts';
 import { judgeNow } from '../features/judging/service.ts';
@@ -18,6 +19,7 @@ const tasks: { [N in JobName]?: Task<N> } = {
   'roll-up': rollUp,
   'unlock-dead-workers': unlockDeadWorkers,
   'clean-up': cleanUp,
+  remind,
   estimate: (context, payload) => context.compute.run('estimate', payload, context.clock()),
   judge: judgeNow,
   'judge-all': queueJudgingOfAll,

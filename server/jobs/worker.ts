@@ -12,6 +12,7 @@ const concurrency = 3;
 const crontab = `
 * * * * * unlock-dead-workers ?max=1
 */10 * * * * judge-all ?max=1
+*/10 * * * * remind ?max=1
 17 3 * * * clean-up ?max=1
 `;
 

@@ -1,6 +1,5 @@
-import type { Letter } from './transport.ts';
-
-type Body = Pick<Letter, 'subject' | 'text' | 'html'>;
+import { plural } from '../../shared/rules/format.ts';
+import { type Body, type LetterLine, type Part, writeLetter } from './letter.ts';
 
 export interface LinkFigures {
   name: string;
@@ -15,50 +14,70 @@ export function linkLetter(
 ): Body {
   const first = purpose === 'set-password';
   const lasts = figures.hours >= 48 ? `${figures.hours / 24} days` : `${figures.hours} hours`;
-  return compose({
-    subject: first ? 'Set your password for Cupel' : 'Set a new password for Cupel',
-    greeting: `Hello ${figures.name},`,
-    paragraphs: [
-      first
+  return writeLetter(first ? 'Set your password for Cupel' : 'Set a new password for Cupel', [
+    { part: 'paragraph', text: `Hello ${figures.name},` },
+    {
+      part: 'paragraph',
+      text: first
         ? 'an administrator has added you to Cupel, the register of soft sensors. Set your password to sign in.'
         : 'somebody asked for a new password for this address. If it was not you, ignore this mail: nothing changes.',
-    ],
-    action: { label: first ? 'Set your password' : 'Set a new password', link },
-    closing: `The link works once, for ${lasts}.`,
-  });
+    },
+    { part: 'action', label: first ? 'Set your password' : 'Set a new password', link },
+    { part: 'small', text: `The link works once, for ${lasts}.` },
+  ]);
 }
 
-interface Parts {
-  subject: string;
-  greeting: string;
-  paragraphs: string[];
-  action: { label: string; link: string };
-  closing: string;
+/** What a digest tells, by what it asks for. */
+export interface DigestFigures {
+  name: string;
+  late: LetterLine[];
+  today: LetterLine[];
+  coming: LetterLine[];
+  gaps: LetterLine[];
+  decisions: LetterLine[];
+  handovers: LetterLine[];
+  /** People whose mail server refuses our mails, with its words: for the managers of their sites. */
+  unreachable: string[];
+  dutiesLink: string;
 }
 
-function compose(parts: Parts): Body {
-  const text = [
-    parts.greeting,
-    ...parts.paragraphs,
-    `${parts.action.label}:\n${parts.action.link}`,
-    parts.closing,
-  ].join('\n\n');
-  const paragraph = (inner: string) => `<p style="margin:0 0 16px">${inner}</p>`;
-  const html =
-    '<!doctype html><html lang="en"><body style="margin:0;background:#F6F3EC;color:#22282B;' +
-    'font:16px/24px \'Noto Sans\',Verdana,sans-serif"><div style="max-width:560px;margin:0 auto;padding:24px">' +
-    [parts.greeting, ...parts.paragraphs].map((line) => paragraph(escapeHtml(line))).join('') +
-    paragraph(
-      `<a href="${escapeHtml(parts.action.link)}" style="display:inline-block;padding:12px 20px;border-radius:6px;` +
-        `background:#24414D;color:#FFFDF9;text-decoration:none">${escapeHtml(parts.action.label)}</a>`,
-    ) +
-    `<p style="margin:0;color:#5E625D;font-size:14px;line-height:20px">${escapeHtml(parts.closing)}</p>` +
-    '</div></body></html>';
-  return { subject: parts.subject, text, html };
+/** A person's mail of the day: what is late first, then what comes, then what waits for their word. */
+export function digestLetter(figures: DigestFigures): Body {
+  const lists: [string, LetterLine[]][] = [
+    ['Late', figures.late],
+    ['Due today', figures.today],
+    ['Coming', figures.coming],
+    ['Without an owner or a deputy', figures.gaps],
+    ['Waiting for your decision', figures.decisions],
+    ['Handed over to you', figures.handovers],
+  ];
+  return writeLetter(digestSubject(figures), [
+    { part: 'paragraph', text: `Hello ${figures.name},` },
+    { part: 'paragraph', text: 'this is what your soft sensors need.' },
+    ...lists
+      .filter(([, lines]) => lines.length > 0)
+      .map(([title, lines]): Part => ({ part: 'list', title, lines })),
+    { part: 'action', label: 'Open your duties', link: figures.dutiesLink },
+    ...figures.unreachable.map((text): Part => ({ part: 'small', text })),
+    {
+      part: 'small',
+      text:
+        'You get this because Cupel names you as owner, deputy, approver or manager of these soft sensors. ' +
+        'One such mail a day at most, in the morning of your site; each thing is told once at each stage. The links ask you to sign in.',
+    },
+  ]);
 }
 
-const escapeHtml = (text: string) =>
-  text.replace(
-    /[&<>"']/g,
-    (sign) => ({ '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;', "'": '&#39;' })[sign]!,
-  );
+/** "2 late, 1 due soon, 1 waits for your decision". */
+function digestSubject({ late, today, coming, gaps, decisions, handovers }: DigestFigures): string {
+  const counts: [LetterLine[], (n: number) => string][] = [
+    [late, (n) => `${n} late`],
+    [today, (n) => `${n} due today`],
+    [coming, (n) => `${n} due soon`],
+    [gaps, (n) => plural(n, 'ownership gap')],
+    [decisions, (n) => `${n} ${n === 1 ? 'waits' : 'wait'} for your decision`],
+    [handovers, (n) => `${n} handed over to you`],
+  ];
+  const words = counts.filter(([lines]) => lines.length > 0).map(([lines, say]) => say(lines.length));
+  return `Cupel: ${words.join(', ')}`;
+}

@@ -19,8 +19,11 @@ export async function sendLetter(config: Config, smtpUrl: string, letter: Letter
       url: smtpUrl,
       connectionTimeout: 10_000,
       greetingTimeout: 10_000,
+      socketTimeout: 60_000,
     });
     transporters.set(smtpUrl, transporter);
   }
-  await transporter.sendMail({ from: config.mailFrom, ...letter });
+  // No absence note answers a mail that says it was written by a program (RFC 3834).
+  const headers = { 'Auto-Submitted': 'auto-generated' };
+  await transporter.sendMail({ from: config.mailFrom, headers, ...letter });
 }

@@ -169,7 +169,7 @@ export const duties = {
     access: { may: 'site.view', on: 'sites' },
     query: z.object({
       ...pageQuery,
-      whose: z.enum(['mine', 'sites']).default('mine'),
+      whose: z.enum(['mine', 'sites']).default('sites'),
       state: z.enum(['open', 'closed']).default('open'),
       kind: z.enum(dutyKinds).optional(),
       siteId: idText.optional(),

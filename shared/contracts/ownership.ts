@@ -169,7 +169,7 @@ export const ownership = {
     path: '/handovers',
     kind: 'json',
     summary: 'Offers that wait: those I must answer, and those I made or gave away',
-    access: { may: 'site.view', on: 'sites' },
+    access: 'self',
     reply: z.object({ toAnswer: z.array(handover), offered: z.array(handover) }),
     example: { toAnswer: [], offered: [exampleHandover] },
   }),

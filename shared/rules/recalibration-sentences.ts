@@ -1,4 +1,11 @@
-import type { Baseline, CalibrationCandidate, CalibrationEvidence, CalibrationKind, Correction, EvidenceReply } from '../contracts/calibration-evidence.ts';
+import type {
+  Baseline,
+  CalibrationCandidate,
+  CalibrationEvidence,
+  CalibrationKind,
+  Correction,
+  EvidenceReply,
+} from '../contracts/calibration-evidence.ts';
 import { formatNumber, formatQuantity, formatSignedQuantity, plural } from './format.ts';
 import { type Measure, biasDecimals, biasWords } from './sentences.ts';
 

@@ -1,4 +1,10 @@
-import type { Baseline, CalibrationCandidate, CalibrationEvidence, CalibrationKind, Correction } from '../contracts/calibration-evidence.ts';
+import type {
+  Baseline,
+  CalibrationCandidate,
+  CalibrationEvidence,
+  CalibrationKind,
+  Correction,
+} from '../contracts/calibration-evidence.ts';
 import { biasWithInterval } from '../numerics/bias.ts';
 import { designCusum } from '../numerics/cusum-design.ts';
 import { driftHistory } from '../numerics/drift.ts';

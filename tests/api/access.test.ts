@@ -19,7 +19,7 @@ const withAccess = table.filter(({ spec }) => typeof spec.access === 'object') a
 }[];
 const guarded = withAccess.filter(({ spec }) => spec.access.on !== 'sites');
 const onRows = guarded.filter(({ spec }) => spec.access.on !== 'company');
-const lists = withAccess.filter(({ spec }) => spec.access.on === 'sites');
+const lists = withAccess.filter(({ spec }) => spec.access.on === 'sites' && spec.method === 'GET');
 const holders = [...roles, 'administrator'] as const;
 type Holder = (typeof holders)[number];
 

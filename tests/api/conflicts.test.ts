@@ -78,7 +78,7 @@ const things: Record<string, Thing> = {
     who: engineer,
     path: (s) => `/soft-sensors/${s.softSensorId}`,
     body: (s, name, version) => ({
-      fields: sheetFields({ unitId: s.unitId, tagName: 'TY-1', name }),
+      fields: sheetFields({ unitId: s.unitId, tagName: 'TY-1', name, ownerId: s.engineer.personId }),
       version,
     }),
     saved: (row) => (row.fields as { name: string } | undefined)?.name ?? row.name,

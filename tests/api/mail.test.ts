@@ -52,6 +52,7 @@ describe('a mail', () => {
     const read = await administrator.get(`/api/v1/local-mails/${row.localMailId}`).expect(200);
     expect(read.body).toMatchObject({ to: email, subject: letter!.subject });
     expect(read.body.text).toContain(tokenIn(letter!));
+    expect(read.body.html).toContain(tokenIn(letter!));
   });
 
   it('is shown beside the message that went to the same person, not another', async () => {
@@ -72,14 +73,14 @@ describe('a mail', () => {
   it('that the server can’t be reached for is kept with what went wrong, and goes out later', async () => {
     const email = await addPerson();
     const { id } = await listed(email);
-    await expect(sendQueuedMail(through('smtp://127.0.0.1:1'), { mailId: id })).rejects.toThrow(
-      /ECONNREFUSED/,
-    );
+    await sendQueuedMail(through('smtp://127.0.0.1:1'), { mailId: id });
     expect(await listed(email)).toMatchObject({
       state: 'failed',
       attempts: 1,
       lastError: expect.stringContaining('ECONNREFUSED'),
     });
+    // It waits for half a minute; let that be over.
+    await server.context.pool.query('update graphile_worker._private_jobs set run_at = now()');
     expect(await lettersTo(server, email)).toHaveLength(1);
     expect(await listed(email)).toMatchObject({ state: 'sent', attempts: 2, lastError: null });
   });

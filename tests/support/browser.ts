@@ -36,13 +36,10 @@ export function useSite(
   const opened: BrowserContext[] = [];
   const complaints: string[] = [];
 
-  useTestContext(
-    clock,
-    async (context) => {
-      site.context = context;
-      await prepare(context);
-    },
-  );
+  useTestContext(clock, async (context) => {
+    site.context = context;
+    await prepare(context);
+  });
   beforeAll(async () => {
     server = createServer(
       createApp(site.context, { clientFolder: path.resolve('dist/client'), signInAttempts: 500 }),

@@ -46,7 +46,10 @@ export function useServer(): TestServer {
 }
 
 /** The same on a context that is there already: what a browser test sets its scene with. */
-export function serverOn(context: Context, server = { now: { value: null } } as unknown as TestServer): TestServer {
+export function serverOn(
+  context: Context,
+  server = { now: { value: null } } as unknown as TestServer,
+): TestServer {
   server.context = context;
   server.app = createApp(context, { signInAttempts: 500 });
   server.drainJobs = () =>

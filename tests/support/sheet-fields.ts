@@ -13,7 +13,7 @@ export function sheetFields(own: Partial<SheetFields> & Pick<SheetFields, 'unitI
     rangeLow: null,
     rangeHigh: null,
     purpose: '',
-    importanceClass: 'B',
+    importanceClass: 'C',
     consumers: [{ kind: 'display', name: 'control room' }],
     samplePointId: null,
     methodId: null,

@@ -24,6 +24,7 @@ export const mailRoutes = (context: Context) =>
         to: found.toAddress,
         subject: found.subject,
         text: parsed.text ?? '',
+        html: parsed.html || null,
       };
     },
   });

@@ -1,8 +1,8 @@
 import { randomUUID } from 'node:crypto';
 import type { Context } from '../../context.ts';
 import type { Tx } from '../../db/client.ts';
-import { addJob } from '../../jobs/queue.ts';
 import { mails } from '../../db/schema/index.ts';
+import { queueSending } from './requeue.ts';
 
 export interface MailOrder {
   /** Says what the mail is about; the same key is never queued twice. */
@@ -13,13 +13,18 @@ export interface MailOrder {
   figures: Record<string, unknown>;
 }
 
-/** Puts a mail into the outbox and its sending into the queue, in the transaction that decided it. */
-export async function queueMail(context: Context, tx: Tx, order: MailOrder): Promise<void> {
+/**
+ * Puts a mail into the outbox and its sending into the queue, in the transaction that decided it. Returns its id; null
+ * where one with this key was queued before.
+ */
+export async function queueMail(context: Context, tx: Tx, order: MailOrder): Promise<number | null> {
   const host = new URL(context.config.publicUrl).hostname;
   const [mail] = await tx
     .insert(mails)
     .values({ ...order, messageId: `<${randomUUID()}@${host}>`, createdAt: context.clock() })
     .onConflictDoNothing({ target: mails.key })
     .returning({ id: mails.id });
-  if (mail) await addJob(tx, 'send-mail', { mailId: mail.id }, { maxAttempts: 12 });
+  if (!mail) return null;
+  await queueSending(tx, mail.id);
+  return mail.id;
 }

@@ -8,6 +8,7 @@ import { persons } from '../../db/schema/index.ts';
 import type { Actor, Origin } from '../../http/request.ts';
 import { toWire } from '../../http/wire.ts';
 import { stale } from '../../http/stale.ts';
+import { syncDutiesOfPerson } from '../duties/service.ts';
 import { lastSaveOf, recordAudit } from '../audit/service.ts';
 import {
   addPerson,
@@ -86,6 +87,7 @@ export async function changePerson(
       })
       .where(eq(persons.id, personId));
     await replaceRoles(tx, personId, body.roles);
+    await syncDutiesOfPerson(tx, personId, context.clock());
     if (body.deactivated) await endSessions(tx, personId);
     // A link that is out would still let in whoever reads the old address.
     if (body.deactivated || body.email !== before.email) await useUpLinks(tx, personId, context.clock());

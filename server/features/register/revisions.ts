@@ -20,9 +20,11 @@ import {
   findSensor,
 } from '../estimates/repo.ts';
 import { markSensorDirty } from '../estimates/work.ts';
+import { syncSensor } from '../duties/service.ts';
 import { lifeNow } from '../judging/repo.ts';
 import { addRun } from '../runs/repo.ts';
 import { refuseWrongInputs } from './model-inputs.ts';
+import { refuseUnowned } from '../ownership/required.ts';
 import { note } from './note.ts';
 import { currentOwnership, listRevisions } from './repo.ts';
 import type { By } from './service.ts';
@@ -113,6 +115,7 @@ export async function proposeRevision(
     const draft = await findDraft(tx, sensor.siteId, sensor.id);
     if (!draft || draft.version !== body.version)
       throw stale('draft', { ...(await draftOf(tx, sensor.siteId, sensor.id)) });
+    await refuseUnowned(tx, sensor);
     const all = await listRevisions(tx, sensor.siteId, sensor.id);
     const waiting = all.find(({ revision }) => revision.decision === null);
     if (waiting) {
@@ -211,6 +214,7 @@ async function putIntoForce(tx: Tx, by: By, sensor: SensorRow, first: boolean, n
       recordedBy: by.actor.id,
     });
   }
+  await syncSensor(tx, { siteId: sensor.siteId, softSensorId: sensor.id }, now);
   // Before a first revision there is no recorded estimate, so it is computed over all history there is.
   await markSensorDirty(tx, sensor.siteId, sensor.id, first ? new Date(0) : now);
 }

@@ -1,4 +1,5 @@
 import { and, eq } from 'drizzle-orm';
+import type { Role } from '../../../shared/contracts/access.ts';
 import type { FieldProblem } from '../../../shared/contracts/errors.ts';
 import type { Sheet, SheetFields } from '../../../shared/contracts/register.ts';
 import type { Context } from '../../context.ts';
@@ -10,7 +11,10 @@ import { type Permitted, lockRow } from '../../http/rows.ts';
 import { stale } from '../../http/stale.ts';
 import type { SensorRow } from '../estimates/repo.ts';
 import { markSensorDirty } from '../estimates/work.ts';
+import { syncSensor } from '../duties/service.ts';
 import { queueJudging } from '../judging/changed.ts';
+import { lifeNow } from '../judging/repo.ts';
+import { type Holders, recordOwnership } from '../ownership/change.ts';
 import { listPeopleAtSite } from '../people/repo.ts';
 import { type SiteRow, getUnit } from '../sites/repo.ts';
 import { tagsByName } from '../tags/repo.ts';
@@ -43,7 +47,7 @@ export async function registerSensor(
     await tx.insert(ownerships).values({ ...key, ownerId, deputyId, approverId });
     await tx.insert(lifeStates).values({ ...key, state: 'draft' });
     await note(context, tx, by, sensor!, 'add', 'softSensor', null, { ...fields });
-    return readSheet(tx, sensor!);
+    return readSheet(tx, sensor!, now);
   });
 }
 
@@ -75,7 +79,10 @@ export async function changeSensor(
     const ownership = await currentOwnership(tx, row.siteId, row.id);
     const before = { ...fieldsOf(sensor), ...peopleOf(ownership) };
     if (sensor.version !== body.version) throw stale('data sheet', { ...before, version: sensor.version });
-    await refuseWrongFields(tx, row.siteId, body.fields, sensor);
+    await refuseWrongFields(tx, row.siteId, body.fields, sensor, before);
+    if (body.fields.ownerId !== before.ownerId && body.fields.ownerId !== by.actor.id) {
+      await refuseNewOwner(tx, sensor);
+    }
     const { ownerId, deputyId, approverId, ...own } = body.fields;
     const [after] = await tx
       .update(softSensors)
@@ -87,19 +94,12 @@ export async function changeSensor(
       .set({ name: own.tagName, description: own.name, unit: own.unit, unitId: own.unitId })
       .where(and(eq(tags.siteId, row.siteId), eq(tags.id, sensor.estimateTagId)));
     if (ownerId !== before.ownerId || deputyId !== before.deputyId || approverId !== before.approverId) {
-      await tx.insert(ownerships).values({
-        siteId: row.siteId,
-        softSensorId: row.id,
-        ownerId,
-        deputyId,
-        approverId,
-        effectiveFrom: context.clock(),
-        recordedBy: by.actor.id,
-      });
-    }
+      const recorded = { personId: by.actor.id, at: context.clock(), reason: '' };
+      await recordOwnership(tx, after!, { ownerId, deputyId, approverId }, recorded);
+    } else await syncSensor(tx, { siteId: row.siteId, softSensorId: row.id }, context.clock());
     await followUp(tx, sensor, after!);
     await note(context, tx, by, after!, 'change', 'softSensor', before, { ...body.fields });
-    return readSheet(tx, after!);
+    return readSheet(tx, after!, context.clock());
   });
 }
 
@@ -117,6 +117,7 @@ async function refuseWrongFields(
   siteId: number,
   fields: SheetFields,
   own: SensorRow | null,
+  before: Holders | null = null,
 ): Promise<void> {
   const problems: FieldProblem[] = [];
   const say = (path: keyof SheetFields, message: string) => problems.push({ path, message });
@@ -135,7 +136,7 @@ async function refuseWrongFields(
   if (fields.methodId !== null && !(await atSite(tx, methods, siteId, fields.methodId))) {
     say('methodId', 'This method is not one of the site. Choose another.');
   }
-  await checkPeople(tx, siteId, fields, say);
+  await checkPeople(tx, siteId, fields, before, say);
   if (problems.length > 0)
     throw invalidInput(
       problems.map(({ path, message }) => ({ path: own ? `fields.${path}` : path, message })),
@@ -155,12 +156,43 @@ async function checkPeople(
   tx: Tx,
   siteId: number,
   fields: SheetFields,
+  before: Holders | null,
   say: (path: keyof SheetFields, message: string) => void,
 ): Promise<void> {
   const people = new Map((await listPeopleAtSite(tx, siteId)).map((person) => [person.id, person]));
-  for (const path of ['ownerId', 'deputyId', 'approverId'] as const) {
+  for (const { path, roles, message } of partRoles) {
     const id = fields[path];
-    if (id !== null && !people.has(id))
-      say(path, 'This person has no role at the site. Choose somebody who has.');
+    // Whoever lost the role meanwhile is an ownership gap of its own and is in the way of no other change.
+    if (id === null || id === before?.[path]) continue;
+    const held = people.get(id)?.roles;
+    if (!held) say(path, 'This person has no role at the site. Choose somebody who has.');
+    else if (!roles.some((role) => held.includes(role))) say(path, message);
   }
+}
+
+const partRoles: { path: 'ownerId' | 'deputyId' | 'approverId'; roles: Role[]; message: string }[] = [
+  {
+    path: 'ownerId',
+    roles: ['engineer'],
+    message: 'The owner must be an engineer of the site. Choose somebody who is.',
+  },
+  {
+    path: 'deputyId',
+    roles: ['engineer'],
+    message: 'The deputy must be an engineer of the site. Choose somebody who is.',
+  },
+  {
+    path: 'approverId',
+    roles: ['engineer', 'manager'],
+    message: 'The approver must be an engineer or a manager of the site. Choose somebody who is.',
+  },
+];
+
+/** Once a soft sensor has left its draft, a new owner is asked first. */
+async function refuseNewOwner(tx: Tx, sensor: SensorRow): Promise<void> {
+  const life = await lifeNow(tx, sensor.siteId, sensor.id);
+  if (life?.state === 'draft') return;
+  const message =
+    'A soft sensor that left its draft changes its owner by handing over, so that the successor accepts. Offer it under “Hand over”, or name yourself.';
+  throw invalidInput([{ path: 'fields.ownerId', message }]);
 }
