@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import { syncDuties } from '../../server/features/duties/service.ts';
 import { fitLeastSquares } from '../../shared/numerics/regression.ts';
 import {
   at,
@@ -92,8 +93,9 @@ describe('the main job, once through', () => {
     const board = await get(manager, '/board', { health: 'all' });
     expect(board.counts).toMatchObject({ total: 1, fit: 1 });
     expect(board.rows[0]).toMatchObject({ softSensorId: sheet.id, health: 'fit' });
-    const forEngineer = await get(engineer, '/board');
-    expect(forEngineer.waiting).toEqual([
+    expect((await get(engineer, '/board')).waiting).toEqual([]);
+    await syncDuties(server.context);
+    expect((await get(manager, '/board')).waiting).toEqual([
       expect.objectContaining({ kind: 'name-owner', softSensorId: sheet.id }),
     ]);
   });

@@ -18,8 +18,12 @@ const screens: [who: string, path: string][] = [
   ['engineer', '/register/1/model'],
   ['engineer', '/register/1/replays'],
   ['engineer', '/register/1/samples'],
-  ['technician', '/register/1/events'],
-  ['technician', '/register/1/events?record=1'],
+  ['technician', '/register/TY-1402/events'],
+  ['technician', '/register/TY-1402/events?record=1'],
+  ['engineer', '/register/TY-1402/recalibration'],
+  ['manager', '/calibrations/waiting'],
+  ['engineer', '/?view=mine&stopped=1'],
+  ['engineer', '/?confirm=1'],
   ['engineer', '/sites/1/events'],
   ['engineer', '/sites/1/events?add=1'],
   ['engineer', '/register/1/sheet'],
@@ -60,9 +64,18 @@ async function openPage(who: string, mode: Mode): Promise<Page> {
   return page;
 }
 
+/** Ids of the demo are not known beforehand: a tag stands for its soft sensor. */
+async function addressOf(path: string): Promise<string> {
+  const one = async (query: string) => String((await site.context.pool.query(query)).rows[0].id);
+  const sensor = `select id from soft_sensors where tag_name = 'TY-1402'`;
+  if (path.includes('TY-1402')) return path.replace('TY-1402', await one(sensor));
+  const waiting = `select id from calibrations where decision is null and soft_sensor_id = (${sensor})`;
+  return path.includes('waiting') ? path.replace('waiting', await one(waiting)) : path;
+}
+
 async function show(who: string, path: string, mode: Mode): Promise<Page> {
   const page = await pageOf(who, mode);
-  await page.goto(`${site.address}${path}`);
+  await page.goto(`${site.address}${await addressOf(path)}`);
   await page.locator('h1').first().waitFor();
   await page.waitForLoadState('networkidle');
   return page;

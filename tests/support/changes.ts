@@ -90,7 +90,13 @@ export const changes: Partial<Record<EndpointName, Send>> = {
     s.engineer.post(v1(`/sites/${s.siteId}/soft-sensors`)).send(sheetFields({ unitId: s.unitId })),
   'register.change': (s, ownerId) =>
     s.engineer.put(v1(`/soft-sensors/${s.softSensorId}`)).send({
-      fields: sheetFields({ unitId: s.unitId, tagName: 'TY-9', ownerId: Number(ownerId) }),
+      fields: sheetFields({
+        unitId: s.unitId,
+        samplePointId: s.samplePointId,
+        tagName: 'TY-9',
+        unit: '°C',
+        ownerId: Number(ownerId),
+      }),
       version: 1,
     }),
   'drafts.fit': (s) =>
@@ -256,12 +262,12 @@ export const findings: Partial<Record<EndpointName, (scene: Scene) => Promise<st
   },
 };
 
-/** Twenty counted pairs of an estimate that reads 2 high, taken from now on. */
+/** Twenty counted pairs of an estimate that reads 2 high, taken now: after whatever restarts its errors. */
 async function addPairedSamples(s: Scene): Promise<void> {
   await s.server.context.pool.query(`
     with taken as (
       insert into samples (site_id, sample_point_id, sample_number, taken_at, reported_at, value, unit, as_written, entered_by, entered_at)
-      select ${s.siteId}, ${s.samplePointId}, 'P-' || i || '-' || clock_timestamp(), now() + i * interval '1 millisecond', now(), 300, '°C', '300',
+      select ${s.siteId}, ${s.samplePointId}, 'P-' || i || '-' || clock_timestamp(), now(), now(), 300, '°C', '300',
         ${s.engineer.personId}, now() from generate_series(1, 20) i returning *)
     insert into pairs (site_id, soft_sensor_id, sample_id, taken_at, reported_at, reference, estimate, error, origin, computed_at)
     select site_id, ${s.softSensorId}, id, taken_at, reported_at, 300, 302 + sin(id), 2 + sin(id), 'recorded', now() from taken`);
