@@ -23,7 +23,10 @@ const visit = (page: Page, where: string) => page.goto(`${address}${where}`);
 /** Opens the data sheet of a tag through the search of the bar, as a person would. */
 async function openSheet(page: Page, tagName: string, tab: string): Promise<void> {
   await visit(page, `/register?find=${tagName}`);
-  await page.getByRole('link', { name: new RegExp(tagName) }).first().click();
+  await page
+    .getByRole('link', { name: new RegExp(tagName) })
+    .first()
+    .click();
   await page.waitForURL(/\/register\/\d+/);
   await page.getByRole('tab', { name: tab }).click();
 }
@@ -41,8 +44,19 @@ const pictures: Picture[] = [
     },
   },
   { name: 'duties', who: 'engineer', dark: true, go: async (page) => void (await visit(page, '/duties')) },
-  { name: 'samples', who: 'technician', phone: true, go: async (page) => void (await visit(page, '/samples')) },
-  { name: 'board-phone', who: 'manager', phone: true, dark: true, go: async (page) => void (await visit(page, '/')) },
+  {
+    name: 'samples',
+    who: 'technician',
+    phone: true,
+    go: async (page) => void (await visit(page, '/samples')),
+  },
+  {
+    name: 'board-phone',
+    who: 'manager',
+    phone: true,
+    dark: true,
+    go: async (page) => void (await visit(page, '/')),
+  },
 ];
 
 async function take(browser: Browser, { name, who, dark, phone, go }: Picture): Promise<void> {
@@ -62,7 +76,7 @@ async function take(browser: Browser, { name, who, dark, phone, go }: Picture): 
   await page.evaluate(() => document.fonts.ready);
   await page.screenshot({ path: path.join(folder, `${name}.png`), animations: 'disabled' });
   await context.close();
-  console.log(`tests/pictures/${name}.png`);
+  process.stdout.write(`tests/pictures/${name}.png\n`);
 }
 
 await mkdir(folder, { recursive: true });

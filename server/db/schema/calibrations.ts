@@ -13,7 +13,10 @@ import {
   unique,
   uniqueIndex,
 } from 'drizzle-orm/pg-core';
-import { type CalibrationEvidence, calibrationKinds } from '../../../shared/contracts/calibration-evidence.ts';
+import {
+  type CalibrationEvidence,
+  calibrationKinds,
+} from '../../../shared/contracts/calibration-evidence.ts';
 import { identity, instant } from './columns.ts';
 import { persons } from './people.ts';
 import { revisions, softSensors } from './register.ts';
