@@ -95,9 +95,10 @@ async function fillCompany(context: Context): Promise<string> {
     numbered as (select site_id, id, row_number() over (partition by site_id order by id) as n from u),
     t as (insert into tags (site_id, name, unit, kind) select s.id, 'AY-' || n, '°C', 'estimate' from sites s, generate_series(1, ${sensorsPerSite}) n returning site_id, id, name)
     insert into soft_sensors (site_id, unit_id, tag_name, name, quantity, unit, decimals, importance_class, consumers, estimate_tag_id,
-      promised_reference_ms, allowed_error_absolute, history_every_ms, recalibration_months, review_months, created_at, created_by)
+      promised_reference_ms, allowed_error_absolute, history_every_ms, recalibration_interval, review_interval, created_at, created_by)
     select t.site_id, n.id, t.name, 'Soft sensor ' || t.name, 'temperature', '°C', 1, 'A', '[{"kind":"closed-loop","name":"loop"}]', t.id,
-      86400000, 10, 60000, 3, 12, now(), ${person!.id}
+      86400000, 10, 60000, '{"every":3,"unit":"months","counted":"last-done","anchorOn":null}',
+      '{"every":12,"unit":"months","counted":"last-done","anchorOn":null}', now(), ${person!.id}
     from t join numbered n on n.site_id = t.site_id and n.n = 1 + (t.id % 10)`);
   await db.execute(
     sql`insert into life_states (site_id, soft_sensor_id, state, effective_from, recorded_by) select site_id, id, 'in-service', now(), ${person!.id} from soft_sensors`,
@@ -105,6 +106,10 @@ async function fillCompany(context: Context): Promise<string> {
   await db.execute(
     sql`insert into ownerships (site_id, soft_sensor_id, owner_id, effective_from, recorded_by) select site_id, id, ${person!.id}, now(), ${person!.id} from soft_sensors`,
   );
+  await db.execute(sql`
+    insert into duties (site_id, soft_sensor_id, kind, due_on, opened_at, opened_on)
+    select site_id, id, kind, current_date - 9 + (id * 7) % 180, now(), current_date
+    from soft_sensors, unnest(array['recalibration', 'review']) kind`);
   await db.execute(sql`
     insert into soft_sensor_status (site_id, soft_sensor_id, health, severity, reasons, bias, bias_low, bias_high, counted, allowed_error, last_errors, last_reference_at, health_since, judged_at, in_service, owner_id, rank)
     select site_id, id, h.health, h.severity,

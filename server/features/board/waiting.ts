@@ -29,14 +29,14 @@ export async function waitingFor(db: Queryable, filter: BoardFilter, now: Date):
       from handovers h where h.answer is null and h.to_id = ${person.id}
       union all
       select 4, 'enter-calibration', c.site_id, c.soft_sensor_id, c.id, c.number, c.decided_by, c.decided_at
-      from calibrations c join current_ownerships o on o.site_id = c.site_id and o.soft_sensor_id = c.soft_sensor_id
-      where c.decision = 'approved' and c.to_be_entered and c.entered_at is null and ${person.id} in (o.owner_id, o.deputy_id)
+      from calibrations c join soft_sensor_status st on st.site_id = c.site_id and st.soft_sensor_id = c.soft_sensor_id
+      where c.decision = 'approved' and c.to_be_entered and c.entered_at is null and st.owner_id = ${person.id}
       union all
       select 5, case d.kind when 'ownership-gap' then 'name-owner' else d.kind || '-late' end, d.site_id, d.soft_sensor_id,
         d.id, null, null, d.due_on::timestamp at time zone s.zone
       from duties d join sites s on s.id = d.site_id
-      left join current_ownerships o on o.site_id = d.site_id and o.soft_sensor_id = d.soft_sensor_id
-      where d.state = 'open' and case when d.kind = 'ownership-gap' then d.site_id = any(${managed})
+      left join soft_sensor_status o on o.site_id = d.site_id and o.soft_sensor_id = d.soft_sensor_id
+      where d.state = 'open' and d.due_on <= (${now.toISOString()}::timestamptz)::date + 1 and case when d.kind = 'ownership-gap' then d.site_id = any(${managed})
         else coalesce(d.assignee_id, o.owner_id) = ${person.id} and d.due_on < (${now.toISOString()}::timestamptz at time zone s.zone)::date end
     )
     select w.kind, w.soft_sensor_id as "softSensorId", ss.tag_name as "tagName", ss.name, w.subject_id as "subjectId",
