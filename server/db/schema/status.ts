@@ -56,6 +56,9 @@ export const softSensorStatus = pgTable(
     index('soft_sensor_status_worst')
       .on(t.rank.desc())
       .where(sql`${t.inService}`),
+    index('soft_sensor_status_not_fit')
+      .on(t.rank.desc())
+      .where(sql`${t.inService} and ${t.stoppedSince} is null and ${t.severity} > 0`),
     index('soft_sensor_status_unowned')
       .on(t.siteId)
       .where(sql`${t.inService} and ${t.ownerId} is null`),

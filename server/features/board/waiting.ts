@@ -35,24 +35,25 @@ export async function waitingFor(db: Queryable, filter: BoardFilter, now: Date):
       select 5, case d.kind when 'ownership-gap' then 'name-owner' else d.kind || '-late' end, d.site_id, d.soft_sensor_id,
         d.id, null, null, d.due_on::timestamp at time zone s.zone
       from duties d join sites s on s.id = d.site_id
-      left join soft_sensor_status o on o.site_id = d.site_id and o.soft_sensor_id = d.soft_sensor_id
       where d.state = 'open' and d.due_on <= (${now.toISOString()}::timestamptz)::date + 1 and case when d.kind = 'ownership-gap' then d.site_id = any(${managed})
-        else coalesce(d.assignee_id, o.owner_id) = ${person.id} and d.due_on < (${now.toISOString()}::timestamptz at time zone s.zone)::date end
+        else coalesce(d.assignee_id, (select o.owner_id from soft_sensor_status o
+          where o.site_id = d.site_id and o.soft_sensor_id = d.soft_sensor_id)) = ${person.id} and d.due_on < (${now.toISOString()}::timestamptz at time zone s.zone)::date end
     )
     select w.kind, w.soft_sensor_id as "softSensorId", ss.tag_name as "tagName", ss.name, w.subject_id as "subjectId",
-      w.number, p.name as by, w.at as since
-    from waiting w
+      w.number, (select name from persons where id = w.by_id) as by, w.at as since
+    from (
+      select w.* from waiting w where ${siteFilter(filter, 'w.site_id')}
+        and exists (select 1 from sites st where st.id = w.site_id and st.archived_at is null)
+      order by w.place, w.at limit ${mostShown}
+    ) w
     join soft_sensors ss on ss.site_id = w.site_id and ss.id = w.soft_sensor_id
-    join sites st on st.id = w.site_id and st.archived_at is null
-    left join persons p on p.id = w.by_id
-    where ${siteFilter(filter, 'w.site_id')}
-    order by w.place, w.at limit ${mostShown}`);
+    order by w.place, w.at`);
   return found.rows.map((row) => ({ ...row, since: new Date(row.since).toISOString() }));
 }
 
 /** Is this person the approver named now on the soft sensor of a proposal? */
 const approverIs = (personId: number, proposal: 'c' | 'r') => {
   const of = sql.raw(proposal);
-  return sql`exists (select 1 from current_ownerships o where o.site_id = ${of}.site_id
-    and o.soft_sensor_id = ${of}.soft_sensor_id and o.approver_id = ${personId})`;
+  return sql`(select o.approver_id from ownerships o where o.site_id = ${of}.site_id
+    and o.soft_sensor_id = ${of}.soft_sensor_id order by o.effective_from desc, o.id desc limit 1) = ${personId}`;
 };

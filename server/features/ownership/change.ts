@@ -1,6 +1,7 @@
+import { and, eq } from 'drizzle-orm';
 import type { OwnerPart } from '../../../shared/contracts/ownership.ts';
 import type { Tx } from '../../db/client.ts';
-import { ownerships } from '../../db/schema/index.ts';
+import { ownerships, softSensorStatus } from '../../db/schema/index.ts';
 import type { SensorRow } from '../estimates/repo.ts';
 import { currentOwnership } from '../register/repo.ts';
 import { syncSensor } from '../duties/service.ts';
@@ -38,5 +39,9 @@ export async function recordOwnership(
     recordedBy: by.personId,
     reason: by.reason,
   });
+  await tx
+    .update(softSensorStatus)
+    .set({ ownerId })
+    .where(and(eq(softSensorStatus.siteId, sensor.siteId), eq(softSensorStatus.softSensorId, sensor.id)));
   await syncSensor(tx, { siteId: sensor.siteId, softSensorId: sensor.id }, by.at);
 }

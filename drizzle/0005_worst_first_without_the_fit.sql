@@ -1,0 +1,1 @@
+CREATE INDEX "soft_sensor_status_not_fit" ON "soft_sensor_status" USING btree ("rank" DESC NULLS LAST) WHERE "soft_sensor_status"."in_service" and "soft_sensor_status"."stopped_since" is null and "soft_sensor_status"."severity" > 0;
