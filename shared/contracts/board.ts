@@ -38,15 +38,20 @@ export const boardRow = z.object({
 });
 export type BoardRow = z.infer<typeof boardRow>;
 
-const counts = z.object({
+/** Soft sensors in service by health; those of stopped units stand apart and are not in `total`. */
+const byHealth = z.object({
   total: z.number().int(),
   fit: z.number().int(),
   watch: z.number().int(),
   unfit: z.number().int(),
   unproven: z.number().int(),
+  stopped: z.number().int(),
+});
+export type CountsByHealth = z.infer<typeof byHealth>;
+
+const counts = byHealth.extend({
   unfitInClosedLoop: z.number().int(),
   notInService: z.number().int(),
-  stopped: z.number().int(),
   /** Recalibrations and reviews that are late, and soft sensors that nobody rightly owns. */
   overdue: z.number().int(),
   unowned: z.number().int(),
@@ -58,14 +63,12 @@ const month = z.object({ month: z.string(), unfit: z.number().int(), unproven: z
 export const board = z.object({
   counts,
   sites: z.array(
-    z.object({
-      siteId: idNumber,
-      name: z.string(),
-      zone: z.string(),
-      total: z.number().int(),
-      months: z.array(month),
-    }),
+    byHealth.extend({ siteId: idNumber, name: z.string(), zone: z.string(), months: z.array(month) }),
   ),
+  /** Counts of what the person owns or is deputy of, where `whose` asks for it. */
+  mine: byHealth.nullable(),
+  /** How many of those asked for the person may confirm as found. */
+  confirmable: z.number().int(),
   /** Worst first; at most `limit`. */
   rows: z.array(boardRow),
   waiting: z.array(
@@ -127,6 +130,8 @@ export const boards = {
         unowned: 1,
       },
       sites: [],
+      mine: null,
+      confirmable: 0,
       rows: [],
       waiting: [],
       lookedAt: null,

@@ -1,4 +1,4 @@
-import type { Board, BoardRow } from '../contracts/board.ts';
+import type { Board, BoardRow, CountsByHealth } from '../contracts/board.ts';
 import { formatCount, formatDay, plural } from './format.ts';
 import { healthWord } from './sentences.ts';
 
@@ -26,9 +26,9 @@ export function boardHeadline(counts: BoardCounts): string {
 
 function loopWords({ unfit, unfitInClosedLoop }: BoardCounts): string {
   if (unfitInClosedLoop === 0) return '';
-  return unfit === 1
-    ? '; it is in closed loop'
-    : `, ${formatCount(unfitInClosedLoop)} of them in closed loop`;
+  if (unfit === 1) return '; it is in closed loop';
+  if (unfitInClosedLoop === unfit) return `, ${unfit === 2 ? 'both' : 'all'} in closed loop`;
+  return `, ${formatCount(unfitInClosedLoop)} of them in closed loop`;
 }
 
 /** Below the headline: the rest of the counts. */
@@ -76,34 +76,49 @@ const months = [
   'December',
 ];
 
+/** A month that ended within these days is too near to compare with. */
+const settledAfterMs = 7 * 86_400_000;
+
 /**
- * Better or worse than at the end of the month before: unfit and unproven of all sites that were judged then. Null where
- * no site has a record of that month.
+ * Better or worse than at the end of the last month; in the first week of a month than at the end of the one before it.
+ * Over those sites that have a record of that month; null where none has.
  * @param now the board's instant
  */
-export function changeWords(board: Pick<Board, 'counts' | 'sites'>, now: string): string | null {
-  const before = monthBefore(now);
-  const then = board.sites.map((site) => site.months.find(({ month }) => month === before));
-  if (then.every((month) => month === undefined)) return null;
-  const sum = (what: 'unfit' | 'unproven') => then.reduce((total, month) => total + (month?.[what] ?? 0), 0);
-  const parts = [
-    difference(board.counts.unfit - sum('unfit'), 'unfit'),
-    difference(board.counts.unproven - sum('unproven'), 'unproven'),
-  ].filter((words) => words !== null);
-  const since = `since the end of ${months[Number(before.slice(5, 7)) - 1]}`;
-  return parts.length === 0
-    ? `As many unfit and unproven as at the end of ${months[Number(before.slice(5, 7)) - 1]}.`
-    : `${capital(parts.join(', '))} ${since}.`;
+export function changeWords({ sites }: Pick<Board, 'sites'>, now: string): string | null {
+  const before = monthBefore(new Date(Date.parse(now) - settledAfterMs));
+  const known = sites.flatMap((site) => {
+    const then = site.months.find(({ month }) => month === before);
+    return then ? [{ site, then }] : [];
+  });
+  if (known.length === 0) return null;
+  const change = (what: 'unfit' | 'unproven') =>
+    known.reduce((total, { site, then }) => total + site[what] - then[what], 0);
+  const parts = [difference(change('unfit'), 'unfit'), difference(change('unproven'), 'unproven')];
+  const words = parts.filter((part) => part !== null).join(' and ');
+  const end = `at the end of ${months[Number(before.slice(5, 7)) - 1]}`;
+  return words === '' ? `As many unfit and unproven as ${end}.` : `${words} than ${end}.`;
 }
 
 const difference = (by: number, what: string): string | null =>
   by === 0 ? null : `${formatCount(Math.abs(by))} ${by > 0 ? 'more' : 'fewer'} ${what}`;
 
-const capital = (words: string): string => words.charAt(0).toUpperCase() + words.slice(1);
+/** The month before an instant's, "2026-11". */
+function monthBefore(instant: Date): string {
+  return new Date(Date.UTC(instant.getUTCFullYear(), instant.getUTCMonth() - 1, 1)).toISOString().slice(0, 7);
+}
 
-function monthBefore(now: string): string {
-  const [year, month] = [Number(now.slice(0, 4)), Number(now.slice(5, 7))];
-  return new Date(Date.UTC(year, month - 2, 1)).toISOString().slice(0, 7);
+/** "2 unfit, 1 unproven, 3 to watch, 14 fit, 1 stopped"; what there is none of is left out. */
+export function countsWords(counts: CountsByHealth): string {
+  const { unfit, unproven, watch, fit, stopped } = counts;
+  const parts: [number, string][] = [
+    [unfit, 'unfit'],
+    [unproven, 'unproven'],
+    [watch, 'to watch'],
+    [fit, 'fit'],
+    [stopped, 'stopped'],
+  ];
+  const said = parts.filter(([count]) => count > 0).map(([count, word]) => `${formatCount(count)} ${word}`);
+  return said.length === 0 ? 'none in service' : said.join(', ');
 }
 
 /** Why a row is among what changed: "Watch since 28 Nov, was Fit" or that it was recalibrated. */
@@ -122,6 +137,9 @@ export function dutyWords(
   today: string,
 ): { late: boolean; words: string } {
   const days = Math.round((Date.parse(duty.dueOn) - Date.parse(today)) / 86_400_000);
-  if (days < 0) return { late: true, words: `${duty.kind} ${-days} d late` };
-  return { late: false, words: days === 0 ? `${duty.kind} due today` : `${duty.kind} in ${days} d` };
+  if (days < 0) return { late: true, words: `${duty.kind} ${-days}\u00a0d\u00a0late` };
+  return {
+    late: false,
+    words: days === 0 ? `${duty.kind} due today` : `${duty.kind} in\u00a0${days}\u00a0d`,
+  };
 }

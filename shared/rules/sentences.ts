@@ -39,7 +39,7 @@ export function healthSentence(reason: HealthReason, measure: Measure): string {
     case 'interval-wider-than-allowed':
       return biasSentence(reason, measure);
     case 'spread-beyond-allowed':
-      return `Single errors spread ± ${quantity('spread')} over the last ${plural(figure(reason, 'n'), 'sample')}; allowed ± ${quantity('allowedSpread')}.`;
+      return `Single errors spread ±\u00a0${quantity('spread')} over the last ${plural(figure(reason, 'n'), 'sample')}; allowed ±\u00a0${quantity('allowedSpread')}.`;
     case 'worse-than-holding':
       return `No better than holding the last laboratory result: error ${quantity('rmse')} RMSE against ${quantity('holdRmse')} over the last ${plural(figure(reason, 'n'), 'sample')}.`;
     case 'no-reference':

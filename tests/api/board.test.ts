@@ -54,11 +54,23 @@ describe('the board', () => {
       effectiveFrom: later(1),
       recordedBy: plant.engineer.personId,
     });
-    expect(idsOf(await board(someone, { health: 'all', whose: 'mine' }))).toEqual([good]);
+    const mine = await board(someone, { health: 'all', whose: 'mine' });
+    expect(idsOf(mine)).toEqual([good]);
+    expect(mine.mine).toEqual({ total: 1, fit: 1, watch: 0, unfit: 0, unproven: 0, stopped: 0 });
+    expect((await board(someone)).mine).toBeNull();
+  });
+
+  it('counts the soft sensors of each site by health', async () => {
+    const { counts, sites } = await board(plant.manager);
+    const { total, fit, watch, unfit, unproven, stopped } = counts;
+    expect(sites).toMatchObject([{ siteId: plant.siteId, total, fit, watch, unfit, unproven, stopped }]);
+    expect([total, fit, unfit]).toEqual([2, 1, 1]);
   });
 
   it('offers what may be confirmed as found to engineers of the site only', async () => {
-    const rows = (await board(plant.engineer, { health: 'confirmable' })).rows;
+    const { rows, confirmable: howMany } = await board(plant.engineer, { health: 'confirmable' });
+    expect(howMany).toBe(1);
+    expect((await board(plant.manager)).confirmable).toBe(0);
     expect(rows.map(({ softSensorId, confirmable }) => [softSensorId, confirmable])).toEqual([[good, true]]);
     expect(idsOf(await board(plant.manager, { health: 'confirmable' }))).toEqual([]);
     const [row] = (await board(plant.manager, { health: 'fit' })).rows;
@@ -111,6 +123,17 @@ describe('the board', () => {
       .set({ healthSince: server.now.value!, healthBefore: 'fit' })
       .where(eq(softSensorStatus.softSensorId, bad));
     expect(idsOf(await board(plant.manager, { health: 'all', changedSince: first }))).toEqual([bad]);
+  });
+
+  it('offers nothing twice: what was confirmed leaves the offer before it is judged anew', async () => {
+    const offered = async () => (await board(plant.engineer)).confirmable;
+    expect(await offered()).toBe(1);
+    later(1);
+    const { confirmed } = await post(plant.engineer, '/confirmations', { softSensorIds: [good] });
+    expect(confirmed).toHaveLength(1);
+    expect(await offered()).toBe(0);
+    await server.drainJobs();
+    expect(await offered()).toBe(0);
   });
 
   it('sets stopped soft sensors apart, with the health that they had', async () => {

@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest';
 import type { BoardRow } from '../../shared/contracts/board.ts';
+import { filterWords, narrowRows, rowsForPaper } from '../../src/components/board/board-filter.ts';
 import { biasFinding, rowFinding, twelveMonths, usedFor } from '../../src/components/board/board-words.ts';
 import { stripErrors } from '../../src/components/board/strip-errors.ts';
 
@@ -44,10 +45,10 @@ const row: BoardRow = {
 
 describe('a row of the board', () => {
   test('says the bias in words, half its interval and the allowed error', () => {
-    expect(biasFinding(row)).toEqual({ strong: '15.3\u00a0°C high', rest: '(± 3.1), allowed 10' });
+    expect(biasFinding(row)).toEqual({ strong: '15.3\u00a0°C high', rest: '(±\u00a03.1), allowed\u00a010' });
     expect(biasFinding({ ...row, bias: -6, biasLow: -7.6, biasHigh: -4.4 })).toEqual({
       strong: '6.0\u00a0°C low',
-      rest: '(± 1.6), allowed 10',
+      rest: '(±\u00a01.6), allowed\u00a010',
     });
   });
 
@@ -85,7 +86,7 @@ describe('a row of the board', () => {
     };
     const finding = rowFinding(spread);
     expect(finding.strong).toBe('15.3\u00a0°C high');
-    expect(finding.rest).toContain('Single errors spread ± 22.0\u00a0°C');
+    expect(finding.rest).toContain('Single errors spread ±\u00a022.0\u00a0°C');
   });
 
   test('names the weightiest use first and counts the others', () => {
@@ -99,7 +100,36 @@ describe('a row of the board', () => {
       { at, error: 12, allowed: 10 },
       { at, error: -3, allowed: 12 },
     ];
-    expect(stripErrors({ lastErrors }).map(({ ratio }) => ratio)).toEqual([1.2, -0.25]);
+    expect(stripErrors({ lastErrors, recalibratedAt: null })).toEqual([{ ratio: 1.2 }, { ratio: -0.25 }]);
+  });
+
+  test('leaves a gap between the last error before a recalibration and the first after it', () => {
+    const on = (day: number) => `2026-11-0${day}T06:00:00.000Z`;
+    const lastErrors = [1, 2, 3, 4].map((day) => ({ at: on(day), error: day, allowed: 10 }));
+    const gaps = (recalibratedAt: string) =>
+      stripErrors({ lastErrors, recalibratedAt }).map(({ recalibratedBefore = false }) => recalibratedBefore);
+    expect(gaps('2026-11-02T18:00:00.000Z')).toEqual([false, false, true, false]);
+    expect(gaps('2026-10-02T18:00:00.000Z')).toEqual([false, false, false, false]);
+  });
+});
+
+describe('what a list is narrowed to', () => {
+  const loop = row;
+  const screen: BoardRow = { ...row, importanceClass: 'B', consumers: [{ kind: 'display', name: 'hall' }] };
+  const none = { find: '', importance: '', use: '' };
+
+  test('is a class and a kind of consumer, any of several that a soft sensor has', () => {
+    expect(narrowRows([loop, screen], none)).toHaveLength(2);
+    expect(narrowRows([loop, screen], { ...none, use: 'display' })).toHaveLength(2);
+    expect(narrowRows([loop, screen], { ...none, use: 'closed-loop' })).toEqual([loop]);
+    expect(narrowRows([loop, screen], { ...none, importance: 'B' })).toEqual([screen]);
+  });
+
+  test('is typed words too on paper, and is said there', () => {
+    const other: BoardRow = { ...screen, tagName: 'AY-2207', unitName: 'Lime kiln' };
+    expect(rowsForPaper([loop, other], { ...none, find: 'kiln' })).toEqual([other]);
+    expect(filterWords({ find: 'kiln', importance: 'B', use: 'display' })).toBe('class B, display, “kiln”');
+    expect(filterWords(none)).toBe('');
   });
 });
 

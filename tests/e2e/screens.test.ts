@@ -24,6 +24,7 @@ const screens: [who: string, path: string][] = [
   ['manager', '/calibrations/waiting'],
   ['engineer', '/?view=mine&stopped=1'],
   ['engineer', '/?confirm=1'],
+  ['manager', '/?class=A&use=closed-loop&fit=1'],
   ['engineer', '/sites/1/events'],
   ['engineer', '/sites/1/events?add=1'],
   ['engineer', '/register/1/sheet'],

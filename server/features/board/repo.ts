@@ -114,8 +114,10 @@ function healthFilter(filter: BoardFilter) {
   return sql`stopped_since is null and ${health}`;
 }
 
-/** As `calibrations.confirm` lets through: Fit, running, enough references, nothing waiting, and an engineer of the site. */
+/** As `calibrations.confirm` lets through: Fit, running, enough references (none of them already decided on), nothing
+ * waiting, and an engineer of the site. */
 export const confirmable = ({ person }: BoardFilter) => sql`(st.severity = 0 and st.stopped_since is null
   and st.references_since >= ${referencesToConfirm} and st.site_id = any(${sql.param(person.edited)}::int[])
   and not exists (select 1 from calibrations c where c.site_id = st.site_id
-    and c.soft_sensor_id = st.soft_sensor_id and c.decision is null))`;
+    and c.soft_sensor_id = st.soft_sensor_id and (c.decision is null
+      or c.decision in ('approved', 'confirmed') and c.decided_at > st.judged_at)))`;

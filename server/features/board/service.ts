@@ -3,6 +3,7 @@ import type { Role } from '../../../shared/contracts/access.ts';
 import type { Board } from '../../../shared/contracts/board.ts';
 import type { Context } from '../../context.ts';
 import type { Actor } from '../../http/request.ts';
+import { countChosen } from './chosen.ts';
 import { lastLook } from './look.ts';
 import { type BoardFilter, countBySite, worstFirst } from './repo.ts';
 import { waitingFor } from './waiting.ts';
@@ -20,8 +21,9 @@ export async function readBoard(
   const sitesAs = (role: Role) => actor.roles.filter((held) => held.role === role).map((held) => held.siteId);
   const person = { id: actor.id, managed: sitesAs('manager'), edited: sitesAs('engineer') };
   const filter = { ...query, person };
-  const [bySite, rows, waiting, looked] = await Promise.all([
+  const [bySite, chosen, rows, waiting, looked] = await Promise.all([
     countBySite(context.db, filter, since, now),
+    countChosen(context.db, filter),
     worstFirst(context.db, filter),
     waitingFor(context.db, filter, now),
     lastLook(context.db, actor.id, now),
@@ -40,7 +42,8 @@ export async function readBoard(
       overdue: sum('overdue'),
       unowned: sum('unowned'),
     },
-    sites: bySite.map(({ siteId, name, zone, total, months }) => ({ siteId, name, zone, total, months })),
+    sites: bySite.map(({ unfitInClosedLoop, notInService, overdue, unowned, ...site }) => site),
+    ...chosen,
     rows,
     waiting,
     lookedAt: looked?.toISOString() ?? null,

@@ -36,7 +36,7 @@ export function askedWords(asked: Asked, now: string): AskedWords {
         name: 'duties',
       });
     case 'name-owner':
-      return asks('Name an owner', `for ${what}`, '', 'Choose', {
+      return asks('Name an owner', `for ${what},`, `open for ${daysLate(since, now)}`, 'Choose', {
         name: 'duties',
         query: { whose: 'sites', kind: 'ownership-gap' },
       });

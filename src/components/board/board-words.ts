@@ -26,8 +26,8 @@ export function biasFinding(row: BoardRow): Finding | null {
   const none = Number(Math.abs(bias).toFixed(decimals)) === 0;
   const side = bias > 0 ? 'high' : 'low';
   const parts = [
-    ...(half === null ? [] : [`(± ${formatNumber(half, decimals)})`]),
-    ...(allowedError === null ? [] : [`allowed ${formatNumber(allowedError, row.decimals)}`]),
+    ...(half === null ? [] : [`(±\u00a0${formatNumber(half, decimals)})`]),
+    ...(allowedError === null ? [] : [`allowed\u00a0${formatNumber(allowedError, row.decimals)}`]),
   ];
   return {
     strong: none ? 'neither high nor low' : `${formatQuantity(Math.abs(bias), unit, decimals)} ${side}`,

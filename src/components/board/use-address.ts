@@ -19,6 +19,15 @@ export function useAddressWord(name: string, blank = '') {
   });
 }
 
+/** A word of the address that is one of a few; anything else written there counts as blank. */
+export function useAddressChoice(name: string, choices: readonly string[]) {
+  const word = useAddressWord(name);
+  return computed({
+    get: () => (choices.includes(word.value) ? word.value : ''),
+    set: (value: string) => (word.value = value),
+  });
+}
+
 /** Keeps the site chosen in the bar and the one in the address the same, so that a link shows what its sender saw. */
 export function useSiteInAddress() {
   const view = useViewStore();

@@ -1,19 +1,21 @@
 import { useQuasar } from 'quasar';
 import { computed } from 'vue';
 import { useBoard } from '../../queries/board.ts';
+import { narrowRows, uses } from './board-filter.ts';
 import type { BoardView } from './BoardViews.vue';
-import { useAddressWord, useSiteInAddress } from './use-address.ts';
+import { useAddressChoice, useAddressWord, useSiteInAddress } from './use-address.ts';
 import { useLastLook } from './use-last-look.ts';
 
 const FEW = 20;
 const MANY = 500;
 
-/** The board as its address asks for it: site, whose, filter, class, and what is unfolded. */
+/** The board as its address asks for it: site, whose, filter, class, use, and what is unfolded. */
 export function useBoardRows() {
   const $q = useQuasar();
   const { chosen } = useSiteInAddress();
   const find = useAddressWord('find');
-  const importance = useAddressWord('class');
+  const importance = useAddressChoice('class', ['A', 'B', 'C']);
+  const use = useAddressChoice('use', uses);
   const viewWord = useAddressWord('view');
   const fitWord = useAddressWord('fit');
   const moreWord = useAddressWord('more');
@@ -24,7 +26,7 @@ export function useBoardRows() {
     get: (): BoardView => (viewWord.value === 'mine' || viewWord.value === 'new' ? viewWord.value : ''),
     set: (next) => (viewWord.value = next),
   });
-  const filtering = computed(() => find.value !== '' || importance.value !== '');
+  const filtering = computed(() => find.value !== '' || importance.value !== '' || use.value !== '');
   const fitShown = computed(() => fitWord.value === '1');
   const stoppedShown = computed(() => stoppedWord.value === '1');
   const more = computed(() => moreWord.value === '1');
@@ -57,6 +59,8 @@ export function useBoardRows() {
     stoppedShown,
   );
   const counts = computed(() => board.data.value?.counts);
+  /** Counts of what is listed: of one's own, or of everything. */
+  const listed = computed(() => (view.value === 'mine' ? board.data.value?.mine : undefined) ?? counts.value);
   /** On a phone what only needs watching waits behind a word too. */
   const notFit = computed(() => {
     const rows = board.data.value?.rows ?? [];
@@ -65,25 +69,23 @@ export function useBoardRows() {
       : rows;
   });
   const rows = computed(() => {
-    const listed = isNew.value
+    const found = isNew.value
       ? (changed.data.value?.rows ?? [])
       : [
           ...notFit.value,
           ...(withFit.value ? (fit.data.value?.rows ?? []) : []),
           ...(stoppedShown.value ? (stopped.data.value?.rows ?? []) : []),
         ];
-    return importance.value === ''
-      ? listed
-      : listed.filter((row) => row.importanceClass === importance.value);
+    return narrowRows(found, { importance: importance.value, use: use.value });
   });
   const hidden = computed(() => {
-    if (!counts.value || filtering.value || view.value !== '') return 0;
-    return Math.max(0, counts.value.total - counts.value.fit - notFit.value.length);
+    if (!listed.value || filtering.value || view.value === 'new') return 0;
+    return Math.max(0, listed.value.total - listed.value.fit - notFit.value.length);
   });
   /** More are fit than one answer holds: what is left out is said, never silently missing. */
   const leftOut = computed(() => {
     const got = fit.data.value?.rows.length ?? 0;
-    return withFit.value && view.value === '' && got > 0 ? (counts.value?.fit ?? 0) - got : 0;
+    return withFit.value && view.value !== 'new' && got > 0 ? (listed.value?.fit ?? 0) - got : 0;
   });
   const loading = computed(() => [board, fit, changed, stopped].some(({ isFetching }) => isFetching.value));
   const showMore = () => (moreWord.value = '1');
@@ -97,10 +99,12 @@ export function useBoardRows() {
     choice,
     find,
     importance,
+    use,
     narrow,
     filtering,
     board,
     counts,
+    listed,
     rows,
     hidden,
     leftOut,

@@ -1,6 +1,13 @@
 import { describe, expect, it } from 'vitest';
 import type { Board, BoardRow } from '../../../shared/contracts/board.ts';
-import { changeWords, dutyWords, standingWords, whatChanged } from '../../../shared/rules/board-sentences.ts';
+import {
+  boardHeadline,
+  changeWords,
+  countsWords,
+  dutyWords,
+  standingWords,
+  whatChanged,
+} from '../../../shared/rules/board-sentences.ts';
 
 const now = '2026-12-01T06:00:00.000Z';
 const counts: Board['counts'] = {
@@ -15,38 +22,65 @@ const counts: Board['counts'] = {
   overdue: 0,
   unowned: 0,
 };
-const site = (months: Board['sites'][number]['months']) => ({
-  siteId: 1,
-  name: 'Tarnby Works',
-  zone: 'Europe/Copenhagen',
-  total: 52,
-  months,
+type Site = Board['sites'][number];
+const site = (months: Site['months'], now: Partial<Site> = {}): Site => ({
+  ...{ siteId: 1, name: 'Tarnby Works', zone: 'Europe/Copenhagen', months },
+  ...{ total: 52, fit: 41, watch: 6, unfit: 3, unproven: 2, stopped: 0 },
+  ...now,
 });
 
 describe('better or worse than last month', () => {
-  it('compares with the end of the month before, over all sites', () => {
-    const sites = [
-      site([
-        { month: '2026-10', unfit: 9, unproven: 9 },
-        { month: '2026-11', unfit: 1, unproven: 4 },
-        { month: '2026-12', unfit: 3, unproven: 2 },
-      ]),
-      site([{ month: '2026-11', unfit: 1, unproven: 0 }]),
-    ];
-    expect(changeWords({ counts, sites }, now)).toBe(
-      '1 more unfit, 2 fewer unproven since the end of November.',
+  const sites = [
+    site([
+      { month: '2026-10', unfit: 1, unproven: 4 },
+      { month: '2026-11', unfit: 3, unproven: 2 },
+      { month: '2026-12', unfit: 3, unproven: 2 },
+    ]),
+    site([{ month: '2026-10', unfit: 1, unproven: 0 }], { unfit: 0, unproven: 0 }),
+  ];
+
+  it('is over all sites that have a record of that month', () => {
+    const young = site([{ month: '2026-12', unfit: 9, unproven: 9 }], { unfit: 9, unproven: 9 });
+    expect(changeWords({ sites: [...sites, young] }, '2026-11-20T06:00:00.000Z')).toBe(
+      '1 more unfit and 2 fewer unproven than at the end of October.',
     );
-    expect(changeWords({ counts: { ...counts, unfit: 2, unproven: 4 }, sites }, now)).toBe(
+  });
+
+  it('passes over a month that ended within the week: nothing can have changed since', () => {
+    expect(changeWords({ sites }, now)).toContain('October');
+    expect(changeWords({ sites }, '2026-12-07T23:00:00.000Z')).toContain('October');
+    expect(changeWords({ sites }, '2026-12-08T06:00:00.000Z')).toBe(
       'As many unfit and unproven as at the end of November.',
     );
   });
 
   it('says nothing where nobody was judged then, over the turn of a year too', () => {
-    expect(changeWords({ counts, sites: [site([])] }, now)).toBeNull();
-    const sites = [site([{ month: '2025-12', unfit: 3, unproven: 3 }])];
-    expect(changeWords({ counts, sites }, '2026-01-02T06:00:00.000Z')).toBe(
-      '1 fewer unproven since the end of December.',
+    expect(changeWords({ sites: [site([])] }, now)).toBeNull();
+    const old = [site([{ month: '2025-12', unfit: 3, unproven: 3 }])];
+    expect(changeWords({ sites: old }, '2026-01-12T06:00:00.000Z')).toBe(
+      '1 fewer unproven than at the end of December.',
     );
+  });
+});
+
+describe('counts in words', () => {
+  it('leave out what there is none of', () => {
+    expect(countsWords({ ...counts, stopped: 1, watch: 0 })).toBe('3 unfit, 2 unproven, 41 fit, 1 stopped');
+    expect(countsWords({ total: 0, fit: 0, watch: 0, unfit: 0, unproven: 0, stopped: 0 })).toBe(
+      'none in service',
+    );
+  });
+
+  it('say how many of the unfit are in closed loop', () => {
+    const head = (unfit: number, unfitInClosedLoop: number) =>
+      boardHeadline({ ...counts, unfit, unfitInClosedLoop }).split('relied on')[1];
+    expect([head(3, 0), head(3, 1), head(1, 1), head(2, 2), head(3, 3)]).toEqual([
+      '.',
+      ', 1 of them in closed loop.',
+      '; it is in closed loop.',
+      ', both in closed loop.',
+      ', all in closed loop.',
+    ]);
   });
 });
 
@@ -76,8 +110,10 @@ describe('a row', () => {
 
   it('counts days to its next duty by the calendar of the site', () => {
     const duty = { kind: 'recalibration' as const, dueOn: '2026-11-22' };
-    expect(dutyWords(duty, '2026-12-01')).toEqual({ late: true, words: 'recalibration 9 d late' });
+    expect(dutyWords(duty, '2026-12-01')).toEqual({ late: true, words: 'recalibration 9\u00a0d\u00a0late' });
     expect(dutyWords(duty, '2026-11-22')).toEqual({ late: false, words: 'recalibration due today' });
-    expect(dutyWords({ kind: 'review', dueOn: '2027-01-10' }, '2026-12-01').words).toBe('review in 40 d');
+    expect(dutyWords({ kind: 'review', dueOn: '2027-01-10' }, '2026-12-01').words).toBe(
+      'review in\u00a040\u00a0d',
+    );
   });
 });
