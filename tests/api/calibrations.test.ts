@@ -335,7 +335,6 @@ describe('confirming as found', () => {
       reason: 'Confirmed as found',
     });
     expect(status).toMatchObject({ health: 'fit' });
-    await server.drainJobs();
     const again = await post(good.plant.engineer, '/confirmations', { softSensorIds: [good.id] });
     expect(again.refused[0].why).toBe('0 references since the last recalibration; 15 are needed.');
   });

@@ -8,11 +8,11 @@ import { softSensors } from '../../db/schema/index.ts';
 import { recalibrationDone } from '../duties/service.ts';
 import { type SensorRow, findSensor } from '../estimates/repo.ts';
 import { queueJudging } from '../judging/changed.ts';
-import { findStatus, lifeNow } from '../judging/repo.ts';
+import { countReferences, findStatus, lifeNow } from '../judging/repo.ts';
 import { note } from '../register/note.ts';
 import type { By } from '../register/service.ts';
 import { evidenceNow } from './evidence.ts';
-import { findWaiting } from './repo.ts';
+import { findWaiting, lastRecalibratedAt } from './repo.ts';
 import { addCalibration, told } from './service.ts';
 
 interface Confirmed {
@@ -61,7 +61,7 @@ async function confirmOne(context: Context, tx: Tx, by: By, given: SensorRow): P
     .where(and(eq(softSensors.siteId, given.siteId), eq(softSensors.id, given.id)))
     .for('update');
   const sensor = (await findSensor(tx, given.siteId, given.id))!;
-  const why = await whyNot(tx, sensor);
+  const why = await whyNot(tx, sensor, context.clock());
   if (why) return why;
   const now = context.clock();
   const { reply, pairIds, revision } = await evidenceNow(tx, sensor, now);
@@ -94,13 +94,16 @@ async function confirmOne(context: Context, tx: Tx, by: By, given: SensorRow): P
   return made.id;
 }
 
-async function whyNot(tx: Tx, sensor: SensorRow): Promise<string | null> {
+async function whyNot(tx: Tx, sensor: SensorRow, now: Date): Promise<string | null> {
   if ((await lifeNow(tx, sensor.siteId, sensor.id))?.state !== 'in-service') return 'It is not in service.';
   const status = await findStatus(tx, sensor.siteId, sensor.id);
   if (!status || status.health !== 'fit') return 'It is not Fit, so its evidence must be looked at.';
   if (status.stoppedSince) return 'Its unit is stopped.';
-  if (status.referencesSince < referencesToConfirm) {
-    return `${status.referencesSince} references since the last recalibration; ${referencesToConfirm} are needed.`;
+  // Counted anew: the status may not have been judged yet since it was last confirmed.
+  const last = await lastRecalibratedAt(tx, sensor.siteId, sensor.id, now);
+  const references = await countReferences(tx, sensor, last, now);
+  if (references < referencesToConfirm) {
+    return `${references} references since the last recalibration; ${referencesToConfirm} are needed.`;
   }
   const waiting = await findWaiting(tx, sensor.siteId, sensor.id);
   return waiting ? `Recalibration ${waiting.number} waits for a decision.` : null;
