@@ -144,7 +144,13 @@ export const sheet = z.object({
   draft: draft.nullable(),
   /** The correction in force with the calibration that put it there; null where the raw estimate stands. */
   correction: correction
-    .extend({ calibrationId: idNumber, since: isoInstant, approvedBy: z.string() })
+    .extend({
+      calibrationId: idNumber,
+      since: isoInstant,
+      approvedBy: z.string(),
+      /** It is in the readings since somebody entered it in a control system; nothing is added here. */
+      entered: z.boolean(),
+    })
     .nullable(),
   waitingCalibration: calibration.nullable(),
   /** Approved for an external estimate, but nobody said yet that it was entered in the control system. */

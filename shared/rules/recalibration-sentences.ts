@@ -19,11 +19,12 @@ export const kindWords: Record<CalibrationKind, string> = {
 
 /** A correction in words: "−15.3 °C", "× 0.982", "× 0.982 + 3.1 °C"; "none" where the raw estimate stands. */
 export function correctionWords({ slope, offset }: Correction, measure: Measure): string {
-  const decimals = biasDecimals(measure);
+  let decimals = biasDecimals(measure);
   if (slope === 1) {
-    return Number(offset.toFixed(decimals)) === 0
-      ? 'none'
-      : formatSignedQuantity(offset, measure.unit, decimals);
+    if (offset === 0) return 'none';
+    // A correction that is there is never said to be none.
+    while (decimals < 6 && Number(offset.toFixed(decimals)) === 0) decimals++;
+    return formatSignedQuantity(offset, measure.unit, decimals);
   }
   const times = `× ${formatNumber(slope, 4)}`;
   if (Number(offset.toFixed(decimals)) === 0) return times;

@@ -58,6 +58,7 @@ async function calibrationsOf(
           calibrationId: (source ?? changing).id,
           since: (source ?? changing).effectiveFrom!,
           approvedBy: (source ?? changing).decidedBy!.name,
+          entered: (source ?? changing).toBeEntered,
         }
       : null,
     waitingCalibration: all.find(({ decision }) => decision === null) ?? null,

@@ -51,6 +51,9 @@ export function correctionInForce({ correction, revisionInForce, fields, siteZon
       ? 'no correction added here'
       : 'no correction in force';
   }
+  if (correction.entered) {
+    return `last correction entered in the control system ${correctionWords(correction, fields)} on ${formatDate(correction.since, siteZone)}, approved by ${correction.approvedBy}`;
+  }
   const earlier =
     status?.currentAt && status.currentAt < correction.since ? ' and not yet in this value' : '';
   return `correction ${correctionWords(correction, fields)} since ${formatDate(correction.since, siteZone)}${earlier}, approved by ${correction.approvedBy}`;

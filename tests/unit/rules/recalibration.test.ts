@@ -147,6 +147,7 @@ describe('a correction in words', () => {
   it('has a true minus sign, its unit and one more decimal than the estimate', () => {
     expect(correctionWords({ slope: 1, offset: -15.34 })).toBe('−15.3 °C');
     expect(correctionWords({ slope: 1, offset: 0 })).toBe('none');
+    expect(correctionWords({ slope: 1, offset: 0.004 })).toBe('+0.004 °C');
     expect(correctionWords({ slope: 0.982, offset: 3.06 })).toBe('× 0.9820 + 3.1 °C');
     expect(correctionWords({ slope: 1.02, offset: -30 })).toBe('× 1.0200 − 30.0 °C');
   });
