@@ -248,8 +248,18 @@ describe('a recalibration', () => {
     expect(answer.body.current.to).not.toBe(seen.to);
   });
 
+  it('is only left as found where the soft sensor is monitored only', async () => {
+    const { plant, id } = await plantWith(30, { correctionMode: 'monitor' });
+    const refused = await propose(plant, id);
+    expect(refused.status).toBe(400);
+    expect(refused.body.fields).toEqual([
+      { path: 'kind', message: expect.stringMatching(/^This soft sensor is monitored only/) },
+    ]);
+    expect((await propose(plant, id, 'as-found')).body).toMatchObject({ kind: 'as-found', decision: null });
+  });
+
   it('asks who entered it where the estimate is computed elsewhere, and adds nothing itself', async () => {
-    const { plant, id, end } = await externalPlant();
+    const { plant, id, end, estimateTagId } = await externalPlant();
     const made = (await propose(plant, id)).body;
     expect(made.toBeEntered).toBe(true);
     expect((await decide(plant.manager, made.id)).body.effectiveFrom).toBeNull();
@@ -268,8 +278,14 @@ describe('a recalibration', () => {
       effectiveFrom: at(end + 1).toISOString(),
     });
     expect((await enter(at(end + 2))).status).toBe(409);
+    // Readings after the entry contain it; adding it here too would correct twice.
+    const after = { siteId: plant.siteId, tagId: estimateTagId, at: at(end + 2), value: 42 };
+    await server.context.db.insert(readings).values(after);
+    await server.refreshSpan(plant.siteId, estimateTagId);
     await server.drainJobs();
-    expect((await sheetOf(plant, id)).status!.currentValue).toBeCloseTo(truth(end - 1) + bias, 6);
+    const sheet = await sheetOf(plant, id);
+    expect(sheet.status!.currentValue).toBe(42);
+    expect(sheet.correction).toMatchObject({ entered: true, offset: made.offset });
   });
 });
 
@@ -415,5 +431,5 @@ async function externalPlant() {
   );
   await server.refreshSpan(plant.siteId, row!.estimateTagId);
   await server.drainJobs();
-  return { plant, id: sensor.id, end };
+  return { plant, id: sensor.id, end, estimateTagId: row!.estimateTagId };
 }
