@@ -1,5 +1,5 @@
 import type { Board, BoardRow, CountsByHealth } from '../contracts/board.ts';
-import { formatCount, formatDay, plural } from './format.ts';
+import { formatCount, formatDay, monthNames, plural } from './format.ts';
 import { healthWord } from './sentences.ts';
 
 /** Counts of soft sensors in service, as the board has them. */
@@ -61,21 +61,6 @@ export function standingWords({ overdue, unowned, stopped }: Board['counts']): s
   return `${parts.join(', ')}.`;
 }
 
-const months = [
-  'January',
-  'February',
-  'March',
-  'April',
-  'May',
-  'June',
-  'July',
-  'August',
-  'September',
-  'October',
-  'November',
-  'December',
-];
-
 /** A month that ended within these days is too near to compare with. */
 const settledAfterMs = 7 * 86_400_000;
 
@@ -95,7 +80,7 @@ export function changeWords({ sites }: Pick<Board, 'sites'>, now: string): strin
     known.reduce((total, { site, then }) => total + site[what] - then[what], 0);
   const parts = [difference(change('unfit'), 'unfit'), difference(change('unproven'), 'unproven')];
   const words = parts.filter((part) => part !== null).join(' and ');
-  const end = `at the end of ${months[Number(before.slice(5, 7)) - 1]}`;
+  const end = `at the end of ${monthNames[Number(before.slice(5, 7)) - 1]}`;
   return words === '' ? `As many unfit and unproven as ${end}.` : `${words} than ${end}.`;
 }
 

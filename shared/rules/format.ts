@@ -6,7 +6,22 @@ export const NO_VALUE = '–';
 const MINUTES_PER_HOUR = 60;
 const MINUTES_PER_DAY = 24 * MINUTES_PER_HOUR;
 const CALENDAR_DAY = /^(\d{4})-(\d{2})-(\d{2})$/;
-const MONTHS = ['Jan', 'Feb', 'Mar', 'Apr', 'May', 'Jun', 'Jul', 'Aug', 'Sep', 'Oct', 'Nov', 'Dec'];
+/** English months in full, January first; dates show their first three letters. */
+export const monthNames = [
+  'January',
+  'February',
+  'March',
+  'April',
+  'May',
+  'June',
+  'July',
+  'August',
+  'September',
+  'October',
+  'November',
+  'December',
+] as const;
+const MONTHS = monthNames.map((name) => name.slice(0, 3));
 
 type Sign = 'negative' | 'exceptZero';
 

@@ -5,23 +5,16 @@ import type {
   SampleReason,
   SampleReasonCode,
 } from '../contracts/sample-import.ts';
-import { formatClock, formatCount, formatDate, formatInstant, plural, zoneOffsetMinutes } from './format.ts';
+import {
+  formatClock,
+  formatCount,
+  formatDate,
+  formatInstant,
+  monthNames,
+  plural,
+  zoneOffsetMinutes,
+} from './format.ts';
 import type { Encoding, FileProblem } from './sample-text.ts';
-
-const months = [
-  'January',
-  'February',
-  'March',
-  'April',
-  'May',
-  'June',
-  'July',
-  'August',
-  'September',
-  'October',
-  'November',
-  'December',
-];
 
 type Figures = SampleReason['figures'];
 
@@ -38,7 +31,7 @@ const whichTime = ({ column }: Figures) =>
   column === 'reported' ? 'The time of reporting' : 'The time of taking';
 
 function impossibleDate({ day, month, year, column }: Figures): string {
-  const name = months[Number(month) - 1];
+  const name = monthNames[Number(month) - 1];
   const where = column === 'reported' ? ' (in the time of reporting)' : '';
   if (!name) return `There is no month ${month}${where}. Is the order of day and month the other way round?`;
   const leap = month === 2 && day === 29 ? ` ${year}` : '';

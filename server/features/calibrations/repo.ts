@@ -1,4 +1,4 @@
-import { and, desc, eq, isNull, sql } from 'drizzle-orm';
+import { type SQL, and, desc, eq, inArray, isNull, lte, max, ne, sql } from 'drizzle-orm';
 import { alias } from 'drizzle-orm/pg-core';
 import type { Calibration } from '../../../shared/contracts/calibrations.ts';
 import type { CorrectionStep } from '../../../shared/rules/correction-steps.ts';
@@ -27,35 +27,42 @@ export async function correctionSteps(
   return found.rows.map(({ at, slope, offset }) => ({ fromMs: new Date(at).getTime(), slope, offset }));
 }
 
-/** When the correction was last changed by a calibration in force at an instant; left as found changes nothing. */
-export async function lastCorrectedAt(
+async function newest(
   db: Queryable,
-  siteId: number,
-  softSensorId: number,
-  now: Date,
+  moment: typeof calibrations.effectiveFrom | typeof calibrations.decidedAt,
+  ...which: SQL[]
 ): Promise<Date | null> {
-  const found = await db.execute<{ at: string | Date | null }>(sql`
-    select max(effective_from) as at from calibrations
-    where site_id = ${siteId} and soft_sensor_id = ${softSensorId} and kind <> 'as-found'
-      and effective_from <= ${now.toISOString()}::timestamptz`);
-  const at = found.rows[0]?.at ?? null;
-  return at === null ? null : new Date(at);
+  const [row] = await db
+    .select({ at: max(moment) })
+    .from(calibrations)
+    .where(and(...which));
+  return row?.at ?? null;
 }
 
+const ofSensor = (siteId: number, softSensorId: number) => [
+  eq(calibrations.siteId, siteId),
+  eq(calibrations.softSensorId, softSensorId),
+];
+
+/** When the correction was last changed by a calibration in force at an instant; left as found changes nothing. */
+export const lastCorrectedAt = (db: Queryable, siteId: number, softSensorId: number, now: Date) =>
+  newest(
+    db,
+    calibrations.effectiveFrom,
+    ...ofSensor(siteId, softSensorId),
+    ne(calibrations.kind, 'as-found'),
+    lte(calibrations.effectiveFrom, now),
+  );
+
 /** When it was last recalibrated, whether or not anything was changed. */
-export async function lastRecalibratedAt(
-  db: Queryable,
-  siteId: number,
-  softSensorId: number,
-  now: Date,
-): Promise<Date | null> {
-  const found = await db.execute<{ at: string | Date | null }>(sql`
-    select max(decided_at) as at from calibrations
-    where site_id = ${siteId} and soft_sensor_id = ${softSensorId} and decision in ('approved', 'confirmed')
-      and decided_at <= ${now.toISOString()}::timestamptz`);
-  const at = found.rows[0]?.at ?? null;
-  return at === null ? null : new Date(at);
-}
+export const lastRecalibratedAt = (db: Queryable, siteId: number, softSensorId: number, now: Date) =>
+  newest(
+    db,
+    calibrations.decidedAt,
+    ...ofSensor(siteId, softSensorId),
+    inArray(calibrations.decision, ['approved', 'confirmed']),
+    lte(calibrations.decidedAt, now),
+  );
 
 const proposer = alias(persons, 'proposer');
 const decider = alias(persons, 'decider');
