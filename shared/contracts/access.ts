@@ -13,6 +13,8 @@ export const actions = [
   'history.remove',
   'samples.add',
   'samples.configure',
+  'samples.ask',
+  'samples.judge',
   'softSensor.register',
   'softSensor.edit',
   'softSensor.replay',
@@ -45,7 +47,12 @@ export type AccessTarget =
   | 'duty'
   | 'handover'
   | 'replay'
+  | 'sample'
   | 'sampleImport'
+  | 'importProfile'
+  | 'sampleRequest'
+  | 'checkStandard'
+  | 'checkResult'
   | 'historyImport'
   | 'run';
 
@@ -66,7 +73,12 @@ export const targetParam: Record<Exclude<AccessTarget, 'company' | 'sites'>, str
   duty: 'dutyId',
   handover: 'handoverId',
   replay: 'replayId',
+  sample: 'sampleId',
   sampleImport: 'sampleImportId',
+  importProfile: 'importProfileId',
+  sampleRequest: 'sampleRequestId',
+  checkStandard: 'checkStandardId',
+  checkResult: 'checkResultId',
   historyImport: 'historyImportId',
   run: 'runId',
 };

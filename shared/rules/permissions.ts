@@ -13,6 +13,9 @@ const matrix: Record<Action, readonly Holder[]> = {
   'history.remove': ['engineer'],
   'samples.add': ['engineer', 'technician'],
   'samples.configure': ['administrator', 'engineer', 'technician'],
+  'samples.ask': ['engineer', 'manager'],
+  // Whether a held result counts: who answers for the estimate or for the laboratory.
+  'samples.judge': ['engineer', 'technician'],
   'softSensor.register': ['engineer'],
   'softSensor.edit': ['engineer'],
   'softSensor.replay': ['engineer', 'manager'],

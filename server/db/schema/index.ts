@@ -10,6 +10,7 @@ export * from './people.ts';
 export * from './register.ts';
 export * from './runs.ts';
 export * from './samples.ts';
+export * from './sampling.ts';
 export * from './sites.ts';
 export * from './status.ts';
 export * from './tags.ts';

@@ -15,6 +15,7 @@ import {
 import type { Interval } from '../../../shared/contracts/interval.ts';
 import type { FitSummary, Model } from '../../../shared/contracts/models.ts';
 import type { Consumer } from '../../../shared/contracts/register.ts';
+import type { SamplingPlan } from '../../../shared/contracts/sampling.ts';
 import { identity, instant } from './columns.ts';
 import { persons } from './people.ts';
 import { sites, units } from './sites.ts';
@@ -45,6 +46,8 @@ export const softSensors = pgTable(
     methodId: integer('method_id'),
     transportDelayMs: integer('transport_delay_ms').notNull().default(0),
     pairingWindowMs: integer('pairing_window_ms').notNull().default(0),
+    /** How often a reference is asked for; null where nobody asks by plan. */
+    samplingPlan: jsonb('sampling_plan').$type<SamplingPlan>(),
     steadyStateGate: boolean('steady_state_gate').notNull().default(true),
     promisedReferenceMs: doublePrecision('promised_reference_ms').notNull(),
     allowedErrorAbsolute: doublePrecision('allowed_error_absolute'),

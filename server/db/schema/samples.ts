@@ -1,5 +1,6 @@
 import { sql } from 'drizzle-orm';
 import {
+  bigint,
   check,
   date,
   doublePrecision,
@@ -11,7 +12,9 @@ import {
   text,
   unique,
   uniqueIndex,
+  uuid,
 } from 'drizzle-orm/pg-core';
+import type { ProfileMapping, SampleMends } from '../../../shared/contracts/sample-profiles.ts';
 import type { SampleCounts, SampleMapping } from '../../../shared/contracts/samples.ts';
 import { bigIdentity, identity, instant } from './columns.ts';
 import { files } from './files.ts';
@@ -50,6 +53,8 @@ export const samplePoints = pgTable(
       .references(() => sites.id),
     unitId: integer('unit_id'),
     name: text('name').notNull(),
+    /** Other names under which laboratories send this point. */
+    aliases: text('aliases').array().notNull().default([]),
     archivedAt: instant('archived_at'),
     version: integer('version').notNull().default(1),
   },
@@ -64,6 +69,35 @@ export const samplePoints = pgTable(
   ],
 );
 
+/** How files of a kind are read at a site: accepted once by a person, recognised by the names of their columns afterwards. */
+export const importProfiles = pgTable(
+  'import_profiles',
+  {
+    id: identity(),
+    siteId: integer('site_id')
+      .notNull()
+      .references(() => sites.id),
+    name: text('name').notNull(),
+    /** The names of the columns, simplified and in order; what a file is recognised by. */
+    signature: text('signature').notNull(),
+    mapping: jsonb('mapping').$type<ProfileMapping>().notNull(),
+    usedAt: instant('used_at').notNull(),
+    uses: integer('uses').notNull().default(0),
+    createdBy: integer('created_by')
+      .notNull()
+      .references(() => persons.id),
+    createdAt: instant('created_at').notNull(),
+    archivedAt: instant('archived_at'),
+    version: integer('version').notNull().default(1),
+  },
+  (t) => [
+    unique('import_profiles_site_id_key').on(t.siteId, t.id),
+    uniqueIndex('import_profiles_signature_key')
+      .on(t.siteId, t.signature)
+      .where(sql`${t.archivedAt} is null`),
+  ],
+);
+
 /** An uploaded file of reference samples: a dry run first, then committed whole, undone while nothing rests on it. */
 export const sampleImports = pgTable(
   'sample_imports',
@@ -75,7 +109,13 @@ export const sampleImports = pgTable(
     fileId: integer('file_id').notNull(),
     fileName: text('file_name').notNull(),
     sha256: text('sha256').notNull(),
+    /** The profile by which the file was recognised, or that was made of its mapping. */
+    profileId: integer('profile_id'),
     mapping: jsonb('mapping').$type<SampleMapping>(),
+    /** What a person wrote in place of cells, by line; the file itself is never changed. */
+    mends: jsonb('mends').$type<SampleMends>().notNull().default({}),
+    /** Names of sample points that the site does not know, with their rows, as of the last commit. */
+    unknownPoints: jsonb('unknown_points').$type<Record<string, number>>().notNull().default({}),
     state: text('state', { enum: ['uploaded', 'committed', 'undone'] })
       .notNull()
       .default('uploaded'),
@@ -96,6 +136,11 @@ export const sampleImports = pgTable(
       name: 'sample_imports_file_fk',
       columns: [t.siteId, t.fileId],
       foreignColumns: [files.siteId, files.id],
+    }),
+    foreignKey({
+      name: 'sample_imports_profile_fk',
+      columns: [t.siteId, t.profileId],
+      foreignColumns: [importProfiles.siteId, importProfiles.id],
     }),
     check('sample_imports_state', sql`${t.state} in ('uploaded', 'committed', 'undone')`),
     check(
@@ -130,6 +175,19 @@ export const samples = pgTable(
     asWritten: text('as_written').notNull(),
     flags: text('flags').array().notNull().default([]),
     heldSince: instant('held_since'),
+    /** What the laboratory wrote where the unit of the method differs from it. */
+    statedUnit: text('stated_unit'),
+    statedValue: doublePrecision('stated_value'),
+    /** Single results under repeatability conditions, of which `value` is the mean. */
+    replicates: doublePrecision('replicates').array(),
+    /** A composite gathered over this long, ending at `takenAt`. */
+    compositeMs: integer('composite_ms'),
+    analyst: text('analyst'),
+    /** The version that this one takes the place of, and why. */
+    supersedesId: bigint('supersedes_id', { mode: 'number' }),
+    changeReason: text('change_reason'),
+    /** Made by the device that entered it, so that sending twice adds once. */
+    entryKey: uuid('entry_key'),
     importId: integer('import_id'),
     line: integer('line'),
     enteredBy: integer('entered_by')
@@ -146,6 +204,16 @@ export const samples = pgTable(
       .where(sql`${t.supersededAt} is null and ${t.withdrawnAt} is null`),
     index('samples_taken').on(t.siteId, t.samplePointId, t.takenAt),
     index('samples_import').on(t.siteId, t.importId),
+    unique('samples_entry_key').on(t.siteId, t.entryKey),
+    index('samples_held')
+      .on(t.siteId)
+      .where(sql`${t.heldSince} is not null and ${t.supersededAt} is null and ${t.withdrawnAt} is null`),
+    foreignKey({
+      name: 'samples_supersedes_fk',
+      columns: [t.siteId, t.supersedesId],
+      foreignColumns: [t.siteId, t.id],
+    }),
+    check('samples_reason_of_change', sql`(${t.supersedesId} is null) = (${t.changeReason} is null)`),
     foreignKey({
       name: 'samples_point_fk',
       columns: [t.siteId, t.samplePointId],

@@ -1,5 +1,6 @@
 import { sql } from 'drizzle-orm';
-import { foreignKey, integer, pgTable, text, unique, uniqueIndex } from 'drizzle-orm/pg-core';
+import { foreignKey, integer, jsonb, pgTable, text, unique, uniqueIndex } from 'drizzle-orm/pg-core';
+import type { Shift } from '../../../shared/contracts/sampling.ts';
 import { identity, instant } from './columns.ts';
 
 export const sites = pgTable(
@@ -8,6 +9,15 @@ export const sites = pgTable(
     id: identity(),
     name: text('name').notNull(),
     zone: text('zone').notNull(),
+    /** When shifts begin, by the clock of the site; each lasts until the next begins. */
+    shifts: jsonb('shifts')
+      .$type<Shift[]>()
+      .notNull()
+      .default([
+        { name: 'Early', from: '06:00' },
+        { name: 'Late', from: '14:00' },
+        { name: 'Night', from: '22:00' },
+      ]),
     archivedAt: instant('archived_at'),
     version: integer('version').notNull().default(1),
     createdAt: instant('created_at').notNull().defaultNow(),

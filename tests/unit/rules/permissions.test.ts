@@ -22,6 +22,8 @@ const wanted: Record<Action, string> = {
   'history.remove': 'engineer',
   'samples.add': 'engineer technician',
   'samples.configure': 'administrator engineer technician',
+  'samples.ask': 'engineer manager',
+  'samples.judge': 'engineer technician',
   'softSensor.register': 'engineer',
   'softSensor.edit': 'engineer',
   'softSensor.replay': 'engineer manager',
