@@ -40,11 +40,12 @@ async function changeSensor(scene: Scene, sensor: Sensor): Promise<void> {
 }
 
 export async function stopOrStart({ context, world, nowMs, ...scene }: Scene, unitId: number): Promise<void> {
-  const stopped = world.stopped.get(unitId)!;
+  const stopped = world.stopped.get(unitId) !== null;
   const { siteId } = world.sensors.find((sensor) => sensor.unitId === unitId) ?? {};
   if (siteId === undefined) return;
   const at = new Date(nowMs);
   const recorded = { at, recordedAt: at, recordedBy: scene.administratorId };
   await context.db.insert(events).values({ siteId, unitId, kind: stopped ? 'start' : 'stop', ...recorded });
-  world.stopped.set(unitId, !stopped);
+  world.stopped.set(unitId, stopped ? null : nowMs);
+  if (stopped) world.started.set(unitId, nowMs);
 }

@@ -66,7 +66,10 @@ export interface Offer {
 export interface World {
   people: Map<number, Person>;
   sensors: Sensor[];
-  stopped: Map<number, boolean>;
+  /** When each unit stopped that stands, by what was recorded; a clock set back by an hour lies before it. */
+  stopped: Map<number, number | null>;
+  /** When each unit last started. */
+  started: Map<number, number>;
   offers: Offer[];
   expected: Map<string, Expected>;
   /** Stages of which somebody was told. */
@@ -150,6 +153,13 @@ function concerned(world: World, sensor: Sensor, duty: Duty, stage: number): Set
   return told;
 }
 
+/** Does a unit stand by the clock, whatever was recorded for later? */
+export function standsAt(world: World, unitId: number, nowMs: number): boolean {
+  const stoppedMs = world.stopped.get(unitId)!;
+  if (stoppedMs !== null) return stoppedMs <= nowMs;
+  return (world.started.get(unitId) ?? 0) > nowMs;
+}
+
 /** One look at everything: what is to be told from now on, and what no longer has to be. */
 export function look(world: World, nowMs: number, tick: number): void {
   const open = new Map<string, { stages: Map<number, Set<number>> }>();
@@ -159,7 +169,7 @@ export function look(world: World, nowMs: number, tick: number): void {
       const reached = stagesUpTo(duty, today);
       const stages = new Map(reached.map((stage) => [stage, concerned(world, sensor, duty, stage)]));
       open.set(duty.key, { stages });
-      if (!world.stopped.get(sensor.unitId)) decide(world, sensor, duty.key, stages, reached.at(-1), tick);
+      if (!standsAt(world, sensor.unitId, nowMs)) decide(world, sensor, duty.key, stages, reached.at(-1), tick);
     }
   }
   for (const { key, sensor, toId } of world.offers) {

@@ -34,7 +34,8 @@ export async function makeWorld(db: Db, random: SeededRandom, size: Size, startM
   const made: World = {
     people,
     sensors: [],
-    stopped: new Map(places.flatMap(({ unitIds }) => unitIds.map((id) => [id, false]))),
+    stopped: new Map(places.flatMap(({ unitIds }) => unitIds.map((id) => [id, null]))),
+    started: new Map(),
     offers: [],
     expected: new Map(),
     known: new Set(),

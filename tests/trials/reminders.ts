@@ -13,7 +13,7 @@ import { type MailServer, type Moment, startMailServer } from '../support/mail-s
 import { type Past, compare } from './reminders-check.ts';
 import { change, openAll, stopOrStart } from './reminders-events.ts';
 import type { Scene } from './reminders-scene.ts';
-import { look } from './reminders-model.ts';
+import { look, standsAt } from './reminders-model.ts';
 import { type Size, makeWorld } from './reminders-world.ts';
 import { type WorkerCrew, startCrew } from './reminders-workers.ts';
 import { type SeededRandom, seededRandom } from './seeded-random.ts';
@@ -120,7 +120,7 @@ async function live(
   const lookNow = async () => {
     const tick = past.stoppedAt.length;
     past.tickAt.set(now.ms, tick);
-    past.stoppedAt.push(new Set([...world.stopped].filter(([, stopped]) => stopped).map(([id]) => id)));
+    past.stoppedAt.push(new Set([...world.stopped.keys()].filter((id) => standsAt(world, id, now.ms))));
     look(world, now.ms, tick);
     await workAt(context, crew, mail, random, now.ms, past.lastTick > 0 ? 0 : trial.killing);
   };
@@ -140,7 +140,7 @@ async function live(
   }
   past.lastTick = past.stoppedAt.length - 1;
   now.ms = startMs + trial.days * dayMs;
-  for (const [unitId, stopped] of world.stopped) if (stopped) await stopOrStart(sceneAt(), unitId);
+  for (const [unitId, at] of world.stopped) if (at !== null) await stopOrStart(sceneAt(), unitId);
   for (let looks = 0; looks < flushDays * 4; looks++, now.ms += dayMs / 4) await lookNow();
   return {
     ...(await compare(context, world, mail.log, past)),
