@@ -168,10 +168,16 @@ export const ownership = {
     method: 'GET',
     path: '/handovers',
     kind: 'json',
-    summary: 'Offers that wait: those I must answer, and those I made or gave away',
+    summary:
+      'Offers that wait: those I must answer, and those I made or gave away; and what was declined lately',
     access: 'self',
-    reply: z.object({ toAnswer: z.array(handover), offered: z.array(handover) }),
-    example: { toAnswer: [], offered: [exampleHandover] },
+    reply: z.object({
+      toAnswer: z.array(handover),
+      offered: z.array(handover),
+      /** Offers of mine that were declined in the last 30 days, where none followed. */
+      declined: z.array(handover),
+    }),
+    example: { toAnswer: [], offered: [exampleHandover], declined: [] },
   }),
   'people.responsibilities': endpoint({
     method: 'GET',

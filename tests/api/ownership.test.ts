@@ -143,6 +143,21 @@ describe('handing over', () => {
     expect((await sheetOf(id)).owner.id).toBe(marco.personId);
   });
 
+  it('that was declined is told with its reason to who offered it and whose place it was, until the next offer', async () => {
+    const id = await inService();
+    const declinedOf = async (agent: Agent) =>
+      (await get(agent, '/handovers')).declined.filter(
+        (row: { softSensorId: number }) => row.softSensorId === id,
+      );
+    const { body } = await offer(plant.manager, id, jun.personId).expect(200);
+    await answer(jun, body.id, 'declined', 'No time before March').expect(200);
+    for (const agent of [plant.manager, marco])
+      expect(await declinedOf(agent)).toMatchObject([{ id: body.id, answerReason: 'No time before March' }]);
+    expect(await declinedOf(jun)).toEqual([]);
+    await offer(plant.manager, id, jun.personId).expect(200);
+    expect(await declinedOf(marco)).toEqual([]);
+  });
+
   it('is offered once at a time, and is taken back by who offered it or a manager', async () => {
     const id = await inService({ importanceClass: 'C', deputyId: null });
     const { body } = await offer(marco, id, jun.personId).expect(200);

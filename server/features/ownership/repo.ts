@@ -1,4 +1,4 @@
-import { type SQL, and, desc, eq, isNull, or, sql } from 'drizzle-orm';
+import { type SQL, and, desc, eq, gt, isNull, ne, or, sql } from 'drizzle-orm';
 import { alias } from 'drizzle-orm/pg-core';
 import type { Handover, OwnershipEntry } from '../../../shared/contracts/ownership.ts';
 import type { Queryable } from '../../db/client.ts';
@@ -78,15 +78,36 @@ export const waitingOf = (
     and(eq(handovers.siteId, siteId), eq(handovers.softSensorId, softSensorId), isNull(handovers.answer)),
   );
 
+const mine = (actor: Actor, siteIds: number[] | 'every') =>
+  and(
+    siteIds === 'every' ? undefined : sql`${handovers.siteId} = any(${sql.param(siteIds)}::int[])`,
+    or(eq(handovers.toId, actor.id), eq(handovers.proposedBy, actor.id), eq(handovers.fromId, actor.id)),
+  );
+
 /** Unanswered offers that a person must answer, or made, or gives away, at the sites where they have a role. */
 export const waitingFor = (db: Queryable, actor: Actor, siteIds: number[] | 'every'): Promise<Handover[]> =>
+  selectHandovers(db, actor, and(isNull(handovers.answer), mine(actor, siteIds)));
+
+const declinedShownMs = 30 * 86_400_000;
+
+/** What a person offered, or gave away, and was declined lately, as long as no offer of the same followed. */
+export const declinedLately = (
+  db: Queryable,
+  actor: Actor,
+  siteIds: number[] | 'every',
+  now: Date,
+): Promise<Handover[]> =>
   selectHandovers(
     db,
     actor,
     and(
-      isNull(handovers.answer),
-      siteIds === 'every' ? undefined : sql`${handovers.siteId} = any(${sql.param(siteIds)}::int[])`,
-      or(eq(handovers.toId, actor.id), eq(handovers.proposedBy, actor.id), eq(handovers.fromId, actor.id)),
+      eq(handovers.answer, 'declined'),
+      ne(handovers.toId, actor.id),
+      gt(handovers.answeredAt, new Date(now.getTime() - declinedShownMs)),
+      mine(actor, siteIds),
+      sql`not exists (select from handovers later where later.site_id = ${handovers.siteId}
+        and later.soft_sensor_id = ${handovers.softSensorId} and later.part = ${handovers.part}
+        and later.proposed_at > ${handovers.proposedAt})`,
     ),
   );
 

@@ -5,7 +5,7 @@ import type { Context } from '../../context.ts';
 import { routesOf } from '../../http/front-door.ts';
 import type { Actor } from '../../http/request.ts';
 import { dutyFacts } from '../duties/facts.ts';
-import { ownershipHistory, waitingFor, waitingOf } from './repo.ts';
+import { declinedLately, ownershipHistory, waitingFor, waitingOf } from './repo.ts';
 import { responsibilitiesOf } from './responsibilities.ts';
 import { answerHandover, proposeHandover, withdrawHandover } from './service.ts';
 
@@ -34,9 +34,11 @@ export const ownershipRoutes = (context: Context) =>
       answerHandover(context, { actor, origin }, row, body),
     'handovers.withdraw': ({ actor, origin, row }) => withdrawHandover(context, { actor, origin }, row),
     'handovers.waiting': async ({ actor }) => {
-      const waiting = await waitingFor(context.db, actor, sitesWhere(actor, 'site.view'));
+      const siteIds = sitesWhere(actor, 'site.view');
+      const waiting = await waitingFor(context.db, actor, siteIds);
+      const declined = await declinedLately(context.db, actor, siteIds, context.clock());
       const mine = ({ to }: { to: { id: number } }) => to.id === actor.id;
-      return { toAnswer: waiting.filter(mine), offered: waiting.filter((row) => !mine(row)) };
+      return { toAnswer: waiting.filter(mine), offered: waiting.filter((row) => !mine(row)), declined };
     },
     'people.responsibilities': async ({ params }) => {
       const found = await responsibilitiesOf(context.db, params.personId);
