@@ -140,7 +140,8 @@ function timeStoodFor(series: EstimateSeries, i: number, holdLimitMs: number): n
   return whole > 0 ? whole : 1;
 }
 
-function isGood(series: EstimateSeries, i: number): boolean {
+/** Is a reading Good and its value finite? */
+export function isGood(series: EstimateSeries, i: number): boolean {
   return series.quality[i] === 0 && Number.isFinite(series.value[i]);
 }
 
@@ -162,7 +163,7 @@ function sdAt(sd: Float64Array | undefined, i: number): number | null {
 }
 
 /** Index of the first instant that is not before `atMs` (binary search), `at.length` when all are before. */
-function firstNotBefore(at: Float64Array, atMs: number): number {
+export function firstNotBefore(at: Float64Array, atMs: number): number {
   let low = 0;
   let high = at.length;
   while (low < high) {

@@ -1,3 +1,4 @@
+import { compositeOver } from '../numerics/composite.ts';
 import { type EstimateSeries, pairAt } from '../numerics/pairing.ts';
 import { steadyStateTest } from '../numerics/steady-state.ts';
 
@@ -13,6 +14,8 @@ export interface PairingRule {
 /** A reference sample as pairing sees it; `takenMs` null where only its date is known. */
 export interface SampleToPair {
   takenMs: number | null;
+  /** A composite gathered over this long, ending at `takenMs`. */
+  compositeMs?: number | null;
   value: number;
   censored: boolean;
   held: boolean;
@@ -34,12 +37,14 @@ const bad = 2;
 
 /**
  * Sets a sample beside the estimate at takenAt − transport delay. The pair counts unless a reason is known: a date
- * without a time, no estimate, a censored result, a held one, or an unsteady process.
+ * without a time, no estimate, a censored result, a held one, or an unsteady process. A composite is compared with the
+ * average of the estimate over its span; gaps in that are a reason too.
  */
 export function pairSample(series: EstimateSeries, sample: SampleToPair, rule: PairingRule): SamplePair {
   const nothing = { estimate: null, sd: null, spread: null, error: null };
   if (sample.takenMs === null) return { ...nothing, notCounted: 'date-without-time' };
   const atMs = sample.takenMs - rule.transportDelayMs;
+  if (sample.compositeMs) return pairComposite(series, sample, sample.compositeMs, atMs, rule.holdLimitMs);
   const paired = pairAt(series, atMs, { holdLimitMs: rule.holdLimitMs, windowMs: rule.pairingWindowMs });
   if (!paired.ok) return { ...nothing, notCounted: 'no-estimate' };
   const { estimate, sd, spread } = paired;
@@ -50,6 +55,28 @@ export function pairSample(series: EstimateSeries, sample: SampleToPair, rule: P
     error: estimate - sample.value,
     notCounted: whyNotCounted(series, sample, rule, atMs),
   };
+}
+
+/**
+ * A composite stands beside the time average of the estimate over its span. The steady-state gate does not apply: that
+ * the process moved is what a composite averages over. Below 90 % of the span with estimates it does not count.
+ */
+function pairComposite(
+  series: EstimateSeries,
+  { value, censored, held }: SampleToPair,
+  compositeMs: number,
+  endMs: number,
+  holdLimitMs: number,
+): SamplePair {
+  const paired = compositeOver(series, endMs - compositeMs, endMs, holdLimitMs);
+  if (!paired.ok) {
+    const some = paired.field === 'coverage' && paired.figure! > 0;
+    const notCounted = some ? 'composite-gaps' : 'no-estimate';
+    return { estimate: null, sd: null, spread: null, error: null, notCounted };
+  }
+  const { estimate, sd, spread } = paired;
+  const notCounted = censored ? 'censored' : held ? 'held' : null;
+  return { estimate, sd, spread, error: estimate - value, notCounted };
 }
 
 function whyNotCounted(

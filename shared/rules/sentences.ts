@@ -105,6 +105,8 @@ const notCounted: Record<string, string> = {
   'unit-stopped': 'The unit was stopped',
   'outside-validity-region': 'Outside the validity region',
   'no-input': 'An input was missing',
+  'composite-gaps': 'Estimates for less than 90 % of a composite’s time',
+  composite: 'Gathered over hours, not at one time',
 };
 
 /** Why a sample doesn’t count, in words. */

@@ -90,9 +90,11 @@ async function trainingData(
       ? 'censored'
       : sample.heldSince
         ? 'held'
-        : x.every(Number.isFinite)
-          ? null
-          : 'no-input';
+        : sample.compositeMs
+          ? 'composite'
+          : x.every(Number.isFinite)
+            ? null
+            : 'no-input';
     if (reason) notUsed.set(reason, (notUsed.get(reason) ?? 0) + 1);
     else rows.push({ x, y: sample.value });
   }

@@ -67,10 +67,11 @@ async function pairMaker(
     holdLimitOf(revisions.at(-1)) +
     sensor.pairingWindowMs +
     steadyReadings * stepOf(revisions.at(-1), sensor);
+  const longest = samples.reduce((most, { compositeMs }) => Math.max(most, compositeMs ?? 0), 0);
   const series = await readSeries(
     client,
     { siteId: sensor.siteId, tagId: sensor.estimateTagId },
-    new Date(Math.min(...times, now.getTime()) - margin),
+    new Date(Math.min(...times, now.getTime()) - margin - longest),
     new Date(Math.max(...times, 0) + margin),
   );
   return (sample) => {
@@ -89,14 +90,28 @@ async function pairMaker(
     };
     const paired = pairSample(series, toPair(sample), { ...sensor, holdLimitMs: holdLimitOf(revision?.row) });
     const { sd, ...rest } = paired;
-    const stopped = stoppedSince(stoppages, new Date(takenMs)) !== null;
+    const stopped = isStopped(stoppages, takenMs, sample.compositeMs ?? 0);
     return { ...base, ...rest, estimateSd: sd, ...(stopped ? { notCounted: 'unit-stopped' } : {}) };
   };
+}
+
+/** Share of a composite's span during which the unit may have stood. */
+const mostStopped = 0.1;
+
+/** Did the unit stand when the sample was taken, or during more than a tenth of a composite's span? */
+function isStopped(stoppages: readonly Stoppage[], takenMs: number, compositeMs: number): boolean {
+  if (compositeMs === 0) return stoppedSince(stoppages, new Date(takenMs)) !== null;
+  const stood = stoppages.reduce((sum, { from, to }) => {
+    const until = Math.min(to?.getTime() ?? takenMs, takenMs);
+    return sum + Math.max(0, until - Math.max(from.getTime(), takenMs - compositeMs));
+  }, 0);
+  return stood > mostStopped * compositeMs;
 }
 
 /** A sample as the pairing rule sees it. */
 export const toPair = (sample: SampleRow) => ({
   takenMs: sample.takenAt?.getTime() ?? null,
+  compositeMs: sample.compositeMs,
   value: sample.value,
   censored: sample.qualifier !== null,
   held: sample.heldSince !== null,

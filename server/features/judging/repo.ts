@@ -6,7 +6,7 @@ import type { SensorRow } from '../estimates/repo.ts';
 export type PairRow = typeof pairs.$inferSelect;
 export type SampleRow = typeof samples.$inferSelect;
 
-/** Pairs whose sample was superseded or withdrawn no longer stand; they are kept. */
+/** Pairs whose sample was superseded, withdrawn, held or released since no longer stand; they are kept. */
 export async function retireOrphanPairs(tx: Queryable, sensor: SensorRow, now: Date): Promise<void> {
   await tx.execute(sql`
     update pairs p set superseded_at = ${now.toISOString()}::timestamptz
@@ -14,6 +14,7 @@ export async function retireOrphanPairs(tx: Queryable, sensor: SensorRow, now: D
     where p.site_id = ${sensor.siteId} and p.soft_sensor_id = ${sensor.id} and p.superseded_at is null
       and s.site_id = p.site_id and s.id = p.sample_id
       and (s.superseded_at is not null or s.withdrawn_at is not null
+        or (p.not_counted = 'held' and s.held_since is null) or (p.not_counted is null and s.held_since is not null)
         or s.sample_point_id is distinct from ${sensor.samplePointId}::int
         or (${sensor.methodId}::int is not null and s.method_id is not null and s.method_id <> ${sensor.methodId}::int))`);
 }

@@ -5,6 +5,7 @@ import {
   calibration,
   constants,
   charts,
+  composite,
   validation,
   design,
   deming,
@@ -34,6 +35,7 @@ import {
   rules,
   screen,
   significance,
+  sitePrecision,
   steady,
   trend,
   region,
@@ -43,6 +45,7 @@ import type { ValidityRegion } from '../../../shared/numerics/validity-region.ts
 import * as modules from './statistics-modules.ts';
 import {
   a,
+  checked,
   b,
   at,
   series,
@@ -131,6 +134,11 @@ export const calls: [call: (...given: never[]) => unknown, given: unknown[]][] =
     ],
   ],
   [precision.sitePrecision, [a]],
+  [composite.compositeOver, [{ ...series, sd: at.map(() => 1) }, 1500, 4500, 3000]],
+  [sitePrecision.pooledRepeatability, [checked]],
+  [sitePrecision.intermediatePrecision, [checked]],
+  [sitePrecision.oneWay, [checked]],
+  [sitePrecision.biasOfLaboratory, [checked, 5]],
   ...candidates.candidateKinds.map((kind): [typeof candidates.fitCandidate, unknown[]] => [
     candidates.fitCandidate,
     [kind, { raw: a, reference: b }, current, 1],
@@ -189,6 +197,8 @@ export const calls: [call: (...given: never[]) => unknown, given: unknown[]][] =
 export const unchecked = [
   ...[
     'shrunkAutocorrelation',
+    'firstNotBefore',
+    'isGood',
     'effectiveCount',
     'ewmaStart',
     'ewmaStep',

@@ -24,3 +24,5 @@ export const individuals = {
   movingRangeUpper: 4,
 };
 export const current = { slope: 1, offset: 0 };
+/** Nine series on one material, of one to three results. */
+export const checked = Array.from({ length: 9 }, (_, i) => a.slice(i, i + 1 + (i % 3)));

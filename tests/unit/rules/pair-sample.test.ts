@@ -46,3 +46,37 @@ describe('pairing a sample', () => {
     expect(pairSample(resting, sample, gated).notCounted).toBeNull();
   });
 });
+
+describe('pairing a composite', () => {
+  const ramp = series((i) => 100 + i);
+  const composite = { ...sample, takenMs: 100 * minute, compositeMs: 60 * minute };
+
+  it('takes the average of the estimate over its time, ending where a single sample would stand', () => {
+    expect(pairSample(ramp, composite, rule)).toEqual({
+      estimate: expect.closeTo(170, 9),
+      error: expect.closeTo(70, 9),
+      spread: expect.closeTo(60 / Math.sqrt(12), 9),
+      sd: null,
+      notCounted: null,
+    });
+    expect(pairSample(ramp, composite, { ...rule, transportDelayMs: 10 * minute }).estimate).toBeCloseTo(
+      160,
+      9,
+    );
+  });
+
+  it('counts though the process moved, but not while it is held or beyond the method’s range', () => {
+    const gated = { ...rule, steadyStateGate: true };
+    expect(pairSample(ramp, sample, gated).notCounted).toBe('unsteady');
+    expect(pairSample(ramp, composite, gated).notCounted).toBeNull();
+    expect(pairSample(ramp, { ...composite, held: true }, rule).notCounted).toBe('held');
+    expect(pairSample(ramp, { ...composite, censored: true }, rule).notCounted).toBe('censored');
+  });
+
+  it('does not count where estimates are missing for more than a tenth of its time', () => {
+    const some = pairSample(ramp, { ...composite, takenMs: 130 * minute }, rule);
+    expect(some).toMatchObject({ estimate: null, error: null, notCounted: 'composite-gaps' });
+    expect(pairSample(ramp, { ...composite, takenMs: 500 * minute }, rule).notCounted).toBe('no-estimate');
+    expect(pairSample(ramp, { ...composite, takenMs: null }, rule).notCounted).toBe('date-without-time');
+  });
+});
