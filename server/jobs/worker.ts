@@ -20,8 +20,11 @@ export interface Workers {
   stop(): Promise<void>;
 }
 
-/** Starts this process's workers. Each holds an advisory lock that says it lives. */
-export async function startWorkers(context: Context): Promise<Workers> {
+/**
+ * Starts this process's workers. Each holds an advisory lock that says it lives.
+ * @param schedule what runs by the clock of the machine; empty where a trial sets the clock
+ */
+export async function startWorkers(context: Context, schedule = crontab): Promise<Workers> {
   const pool = new pg.Pool({
     connectionString: context.config.databaseDirectUrl,
     max: concurrency + 2,
@@ -52,7 +55,7 @@ export async function startWorkers(context: Context): Promise<Workers> {
     pgPool: pool,
     concurrency,
     events,
-    crontab,
+    crontab: schedule,
     noHandleSignals: true,
     logger: quietLogger(context),
     taskList: taskList(context),

@@ -169,7 +169,8 @@ export function look(world: World, nowMs: number, tick: number): void {
       const reached = stagesUpTo(duty, today);
       const stages = new Map(reached.map((stage) => [stage, concerned(world, sensor, duty, stage)]));
       open.set(duty.key, { stages });
-      if (!standsAt(world, sensor.unitId, nowMs)) decide(world, sensor, duty.key, stages, reached.at(-1), tick);
+      if (!standsAt(world, sensor.unitId, nowMs))
+        decide(world, sensor, duty.key, stages, reached.at(-1), tick);
     }
   }
   for (const { key, sensor, toId } of world.offers) {
