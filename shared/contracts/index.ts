@@ -6,6 +6,7 @@ import type { EndpointSpec } from './endpoint.ts';
 import { events } from './events.ts';
 import { history } from './history.ts';
 import { judging } from './judging.ts';
+import { laboratory } from './laboratory.ts';
 import { mail } from './mail.ts';
 import { models } from './models.ts';
 import { ownership } from './ownership.ts';
@@ -13,6 +14,7 @@ import { people } from './people.ts';
 import { register } from './register.ts';
 import { runs } from './runs.ts';
 import { samples } from './samples.ts';
+import { sampling } from './sampling.ts';
 import { sites } from './sites.ts';
 import { tags } from './tags.ts';
 
@@ -24,6 +26,8 @@ export const endpoints = {
   ...runs,
   ...history,
   ...samples,
+  ...laboratory,
+  ...sampling,
   ...register,
   ...models,
   ...judging,

@@ -17,6 +17,7 @@ const exampleFields: SheetFields = {
   methodId: 1,
   transportDelayMs: 0,
   pairingWindowMs: 600_000,
+  samplingPlan: { count: 1, per: 'shift' },
   steadyStateGate: true,
   promisedReferenceMs: 604_800_000,
   allowedErrorAbsolute: 10,

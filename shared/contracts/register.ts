@@ -6,6 +6,7 @@ import { correction } from './calibration-evidence.ts';
 import { calibration } from './calibrations.ts';
 import { draft, positive, revision } from './models.ts';
 import { exampleSheet } from './register-examples.ts';
+import { samplingPlan } from './sampling.ts';
 
 export const consumer = z.object({
   kind: z.enum(['display', 'closed-loop', 'quality-release', 'emission-report']),
@@ -37,6 +38,8 @@ export const sheetFields = z.object({
     .min(0, 'A delay can’t be negative.')
     .max(7 * 86_400_000),
   pairingWindowMs: z.number().int().min(0, 'A window can’t be negative.').max(86_400_000),
+  /** How often the laboratory is asked for a reference; null where nobody asks by plan. */
+  samplingPlan: samplingPlan.nullable(),
   steadyStateGate: z.boolean(),
   promisedReferenceMs: positive('The promised interval'),
   allowedErrorAbsolute: positive('The allowed error').nullable(),

@@ -1,6 +1,9 @@
 import { z } from 'zod';
-import { endpoint, idNumber, ids, idText, isoInstant, nothing, shortText, version } from './endpoint.ts';
+import { exampleMethod, examplePoint, method, sample, samplePoint } from './sample-rows.ts';
+import { endpoint, idNumber, ids, idText, nothing, shortText, version } from './endpoint.ts';
 import { pageQuery, paged } from './paging.ts';
+import { sampleMends } from './sample-mends.ts';
+import { exampleProfile, importProfile, profileBody } from './sample-profiles.ts';
 import {
   exampleImport,
   exampleView,
@@ -9,79 +12,13 @@ import {
   sampleMapping,
 } from './sample-import.ts';
 
+export type { LabMethod, Sample, SamplePoint } from './sample-rows.ts';
 export type { SampleCounts, SampleImport, SampleImportView, SampleMapping } from './sample-import.ts';
 
-/** A soft sensor that the samples of a point go to. */
-const goesTo = z.object({ softSensorId: idNumber, tagName: z.string() });
-
-export const samplePoint = z.object({
-  id: idNumber,
-  siteId: idNumber,
-  unitId: idNumber.nullable(),
-  unitName: z.string().nullable(),
-  name: z.string(),
-  archivedAt: isoInstant.nullable(),
-  version,
-  goesTo: z.array(goesTo.extend({ unit: z.string(), methodId: idNumber.nullable() })),
-});
-export type SamplePoint = z.infer<typeof samplePoint>;
-
-export const method = z.object({
-  id: idNumber,
-  siteId: idNumber,
-  name: z.string(),
-  quantity: z.string(),
-  unit: z.string(),
-  repeatability: z.number().nullable(),
-  reproducibility: z.number().nullable(),
-  archivedAt: isoInstant.nullable(),
-  version,
-});
-export type LabMethod = z.infer<typeof method>;
-
-export const sample = z.object({
-  id: idNumber,
-  siteId: idNumber,
-  samplePointId: idNumber,
-  samplePoint: z.string(),
-  method: z.string().nullable(),
-  sampleNumber: z.string(),
-  version,
-  takenAt: isoInstant.nullable(),
-  takenOn: z.string().nullable(),
-  reportedAt: isoInstant,
-  value: z.number(),
-  asWritten: z.string(),
-  qualifier: z.enum(['<', '>']).nullable(),
-  unit: z.string(),
-  flags: z.array(z.string()),
-  importId: idNumber.nullable(),
-  goesTo: z.array(goesTo),
-});
-export type Sample = z.infer<typeof sample>;
-
-const examplePoint: SamplePoint = {
-  id: 1,
-  siteId: 1,
-  unitId: 1,
-  unitName: 'Melting furnace 1',
-  name: 'KX-09',
-  archivedAt: null,
-  version: 1,
-  goesTo: [{ softSensorId: 1, tagName: 'TY-1402', unit: '°C', methodId: 1 }],
-};
-const exampleMethod: LabMethod = {
-  id: 1,
-  siteId: 1,
-  name: 'Immersion pyrometry',
-  quantity: 'temperature',
-  unit: '°C',
-  repeatability: 4,
-  reproducibility: 9,
-  archivedAt: null,
-  version: 1,
-};
 const pointBody = z.object({ name: shortText('a name', 60), unitId: idNumber.nullable() });
+const aliases = z
+  .array(shortText('another name', 60))
+  .max(20, 'A sample point goes by 20 other names at most.');
 const precision = z.number().min(0, 'A precision limit can’t be negative.').nullable();
 const methodBody = z.object({
   name: shortText('a name', 80),
@@ -109,7 +46,7 @@ export const samples = {
     summary: 'Add a sample point',
     access: { may: 'samples.configure', on: 'site' },
     params: ids('siteId'),
-    body: pointBody,
+    body: pointBody.extend({ aliases: aliases.default([]) }),
     reply: samplePoint,
     example: examplePoint,
   }),
@@ -117,10 +54,11 @@ export const samples = {
     method: 'PUT',
     path: '/sample-points/:samplePointId',
     kind: 'json',
-    summary: 'Rename a sample point, archive or take back',
+    summary: 'Rename a sample point or say its other names, archive or take back',
     access: { may: 'samples.configure', on: 'samplePoint' },
     params: ids('samplePointId'),
-    body: pointBody.extend({ archived: z.boolean(), version }),
+    /** Other names stay as they are where they are left out. */
+    body: pointBody.extend({ aliases: aliases.optional(), archived: z.boolean(), version }),
     reply: samplePoint,
     example: examplePoint,
   }),
@@ -181,7 +119,7 @@ export const samples = {
     method: 'POST',
     path: '/sites/:siteId/sample-imports',
     kind: 'upload',
-    summary: 'Upload a CSV of reference samples; nothing is added yet',
+    summary: 'Upload a file of reference samples (CSV or XLSX); nothing is added yet',
     access: { may: 'samples.add', on: 'site' },
     params: ids('siteId'),
     maxBytes: 20 * 1024 ** 2,
@@ -208,6 +146,39 @@ export const samples = {
     body: z.object({ mapping: sampleMapping, version }),
     reply: sampleImportView,
     example: exampleView,
+  }),
+  'sampleImports.mend': endpoint({
+    method: 'PUT',
+    path: '/sample-imports/:sampleImportId/mends',
+    kind: 'json',
+    summary:
+      'Write parts of rows anew, or leave rows out, and see what would become of them; the file stays as it is',
+    access: { may: 'samples.add', on: 'sampleImport' },
+    params: ids('sampleImportId'),
+    body: z.object({ mends: sampleMends, version }),
+    reply: sampleImportView,
+    example: exampleView,
+  }),
+  'importProfiles.list': endpoint({
+    method: 'GET',
+    path: '/sites/:siteId/import-profiles',
+    kind: 'json',
+    summary: 'How files of known kinds are read at a site, the last used first',
+    access: { may: 'site.view', on: 'site' },
+    params: ids('siteId'),
+    reply: z.object({ rows: z.array(importProfile) }),
+    example: { rows: [exampleProfile] },
+  }),
+  'importProfiles.change': endpoint({
+    method: 'PUT',
+    path: '/import-profiles/:importProfileId',
+    kind: 'json',
+    summary: 'Rename how files of a kind are read, forget it or take it back',
+    access: { may: 'samples.configure', on: 'importProfile' },
+    params: ids('importProfileId'),
+    body: profileBody,
+    reply: importProfile,
+    example: exampleProfile,
   }),
   'sampleImports.commit': endpoint({
     method: 'POST',

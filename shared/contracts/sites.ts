@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { endpoint, idNumber, ids, isoInstant, shortText, version } from './endpoint.ts';
+import { type Shift, shift } from './sampling.ts';
 
 /** An IANA time zone that this runtime knows. */
 export const zone = z.string().refine((name) => {
@@ -10,10 +11,43 @@ export const zone = z.string().refine((name) => {
   }
 }, 'This is no time zone. One looks like Europe/Copenhagen.');
 
+/** What a site begins with: three shifts of eight hours. */
+export const usualShifts: Shift[] = [
+  { name: 'Early', from: '06:00' },
+  { name: 'Late', from: '14:00' },
+  { name: 'Night', from: '22:00' },
+];
+
+/** The shifts of a site's day, kept in order of time; what is wrong stands beside the name or time at fault. */
+const shifts = z
+  .array(shift)
+  .min(1, 'Give one shift at least; it may last the whole day.')
+  .max(6, 'A day has 6 shifts at most.')
+  .superRefine((given, context) => {
+    given.forEach(({ name, from }, index) => {
+      const earlier = given.slice(0, index);
+      if (earlier.some((other) => other.name.toLowerCase() === name.toLowerCase()))
+        context.addIssue({
+          code: 'custom',
+          path: [index, 'name'],
+          message: `Another shift is called ${name} already. Choose another name.`,
+        });
+      if (earlier.some((other) => other.from === from))
+        context.addIssue({
+          code: 'custom',
+          path: [index, 'from'],
+          message: `Another shift begins at ${from} already. Choose another time.`,
+        });
+    });
+  })
+  .overwrite((given) => [...given].sort((a, b) => a.from.localeCompare(b.from)));
+
 export const site = z.object({
   id: idNumber,
   name: z.string(),
   zone: z.string(),
+  /** When shifts begin, by the clock of the site. */
+  shifts: z.array(shift),
   archivedAt: isoInstant.nullable(),
   version,
 });
@@ -39,7 +73,14 @@ export const unit = z.object({
 });
 export type Unit = z.infer<typeof unit>;
 
-const exampleSite = { id: 1, name: 'Tarnby Works', zone: 'Europe/Copenhagen', archivedAt: null, version: 1 };
+const exampleSite = {
+  id: 1,
+  name: 'Tarnby Works',
+  zone: 'Europe/Copenhagen',
+  shifts: usualShifts,
+  archivedAt: null,
+  version: 1,
+};
 const exampleArea = { id: 1, siteId: 1, name: 'Hot end', archivedAt: null, version: 1 };
 const exampleUnit = {
   id: 1,
@@ -50,7 +91,7 @@ const exampleUnit = {
   archivedAt: null,
   version: 1,
 };
-const siteBody = z.object({ name: shortText('the site’s name', 80), zone });
+const siteBody = z.object({ name: shortText('the site’s name', 80), zone, shifts: shifts.optional() });
 const nameBody = z.object({ name: shortText('a name', 80) });
 const archived = z.boolean();
 

@@ -1,9 +1,14 @@
 import { Temporal } from 'temporal-polyfill';
-import type { z } from 'zod';
-import type { dateOrder } from '../contracts/history.ts';
-import { clearMajority } from './majority.ts';
+import { type DateOrder, monthNamed, yearFirst, yearLast } from './date-shape.ts';
 
-export type DateOrder = z.infer<typeof dateOrder>;
+export {
+  type DateOrder,
+  type DateShape,
+  dateOrderOf,
+  dateShape,
+  detectDateOrder,
+  looksLikeTime,
+} from './date-shape.ts';
 
 /** Why a text gives no instant. The figures say what was found; sentences are made elsewhere. */
 export interface TimeProblem {
@@ -33,13 +38,6 @@ const minuteMs = 60_000;
 const dayMs = 86_400_000;
 const monthNames = ['jan', 'feb', 'mar', 'apr', 'may', 'jun', 'jul', 'aug', 'sep', 'oct', 'nov', 'dec'];
 
-const clockPattern = String.raw`(?:[\sT,]+(\d{1,2}):(\d{2})(?::(\d{2})(?:[.,](\d{1,9}))?)?(?:\s?([ap])\.?m\.?)?\s?(z|utc|[+-]\d{2}(?::?\d{2})?)?)?`;
-const yearFirst = new RegExp(String.raw`^(\d{4})([-/.])(\d{1,2})\2(\d{1,2})${clockPattern}$`, 'i');
-const yearLast = new RegExp(String.raw`^(\d{1,2})([-/.])(\d{1,2})\2(\d{4}|\d{2})${clockPattern}$`, 'i');
-const monthNamed = new RegExp(
-  String.raw`^(\d{1,2})([-/. ])([a-z]{3})[a-z]*\.?\2(\d{4}|\d{2})${clockPattern}$`,
-  'i',
-);
 const epochMs = /^-?\d{1,15}$/;
 
 /**
@@ -202,12 +200,6 @@ function askZone(parts: Parts, zone: string): TimeRead {
   }
 }
 
-/** Is the text written like a date, with or without a time of day? For finding the column of times. */
-export function looksLikeTime(text: string): boolean {
-  const trimmed = text.trim();
-  return yearFirst.test(trimmed) || yearLast.test(trimmed) || monthNamed.test(trimmed);
-}
-
 /**
  * The end of a calendar day on the clock of a zone: the instant at which the next one begins.
  * @param on "YYYY-MM-DD"
@@ -215,30 +207,4 @@ export function looksLikeTime(text: string): boolean {
  */
 export function endOfDay(on: string, zone: string): number {
   return Temporal.PlainDate.from(on).add({ days: 1 }).toZonedDateTime(zone).epochMilliseconds;
-}
-
-/**
- * What the times of one column say of their order. Never decided by one cell: a day above 12 must be seen, and nine in
- * ten of such days must agree.
- * @param texts cells of the column; blanks are passed over
- * @returns the order, or null while it is open (every day is 12 or less) or the cells contradict each other
- */
-export function detectDateOrder(texts: Iterable<string>): DateOrder | null {
-  const seen = new Map<DateOrder, number>();
-  const see = (order: DateOrder) => seen.set(order, (seen.get(order) ?? 0) + 1);
-  // Read alike under every order, so they decide only where nothing else is seen.
-  let plain: DateOrder | null = null;
-  let open = false;
-  for (const text of texts) {
-    const trimmed = text.trim();
-    const last = yearLast.exec(trimmed);
-    if (yearFirst.test(trimmed)) plain = 'iso';
-    else if (monthNamed.test(trimmed)) plain ??= 'day-month-year';
-    else if (/^\d{12,13}$/.test(trimmed)) see('epoch-ms');
-    else if (last && Number(last[1]) > 12) see('day-month-year');
-    else if (last && Number(last[3]) > 12) see('month-day-year');
-    else if (last) open = true;
-  }
-  if (seen.size === 0) return open ? null : plain;
-  return clearMajority(seen);
 }

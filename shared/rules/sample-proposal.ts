@@ -1,109 +1,64 @@
+import type { FileEvidence } from '../contracts/sample-evidence.ts';
 import type { ProposedMapping } from '../contracts/sample-import.ts';
-import { detectDateOrder, looksLikeTime } from './local-time.ts';
-import { detectDecimal, looksNumeric } from './sample-number.ts';
+import { type ColumnsFound, findColumns, spreadOver } from './sample-columns.ts';
+import { type FileRead, type Sheet, tableOf } from './sample-file.ts';
+import { findDateOrder, findDecimal, findMissingWords, findZone, timeCells } from './sample-finder.ts';
+import { findHeader, type HeaderFound } from './sample-header.ts';
+import { unitInRows } from './sample-junk.ts';
+import { defaultMissingWords } from './sample-mapping.ts';
 import type { SampleRegistry } from './sample-registry.ts';
-import { detectDelimiter, headOf, readTable, type TableRow } from './sample-table.ts';
+import { detectDelimiter, headOf, type TableRow } from './sample-table.ts';
 import type { FileProblem } from './sample-text.ts';
 
-type Role = keyof ProposedMapping['columns'];
 type Columns = ProposedMapping['columns'];
-export type Proposal = { ok: true; proposed: ProposedMapping } | { ok: false; problem: FileProblem };
+export type Proposal =
+  { ok: true; proposed: ProposedMapping; because: FileEvidence[] } | { ok: false; problem: FileProblem };
 
-/** Words of headers, the telling ones first; a column that fits an earlier role is not asked for a later one. */
-const roleWords: [Role, RegExp[]][] = [
-  [
-    'reportedAt',
-    [/report/, /\b(result|approved|validated|released|completed) (time|date|at|on)\b/, /\banaly[sz]ed\b/],
-  ],
-  ['samplePoint', [/\bpoint\b/, /\b(location|position|stream)\b/]],
-  [
-    'sampleNumber',
-    [/\b(sample|probe|lab|lims) ?(no|nr|num|number|id|code)\b/, /^(id|no|nr|number|sample|probe)\.?$/],
-  ],
-  [
-    'takenAt',
-    [/\b(taken|sampled|sampling|collected|drawn)\b/, /\bsample (time|date)\b/, /^(date|time|timestamp)/],
-  ],
-  ['unit', [/^units?\b/, /\buom\b/]],
-  ['value', [/^(value|result|reading)\b/, /\b(value|result|reading|measured)\b/]],
-];
-const examined = 5000;
+/** A table with the line that names its columns. */
+interface Found {
+  sheet: Sheet | null;
+  delimiter: ProposedMapping['delimiter'];
+  header: HeaderFound;
+  cells: string[];
+  line: number;
+  rows: TableRow[];
+}
+type Search = { ok: true; found: Found } | { ok: false; problem: FileProblem };
 
-const simplified = (header: string): string =>
-  header
-    .toLowerCase()
-    .replaceAll('_', ' ')
-    .replace(/\s+/g, ' ')
-    .replace(/\.(?=\s|$)/g, '')
-    .trim();
+const refuse = (problem: FileProblem): Search => ({ ok: false, problem });
 
-function columnsByWords(header: readonly string[]): Columns {
-  const columns: Columns = {
-    sampleNumber: null,
-    takenAt: null,
-    reportedAt: null,
-    value: null,
-    unit: null,
-    samplePoint: null,
-  };
-  const taken = new Set<number>();
-  for (const [role, patterns] of roleWords) {
-    const fitting = patterns.flatMap((pattern) =>
-      header.flatMap((text, column) =>
-        !taken.has(column) && pattern.test(simplified(text)) ? [column] : [],
-      ),
-    );
-    if (fitting[0] === undefined) continue;
-    columns[role] = fitting[0];
-    taken.add(fitting[0]);
-  }
-  return columns;
+function findTable(
+  file: FileRead,
+  sheet: Sheet | null,
+  delimiter: ProposedMapping['delimiter'],
+  first: string,
+): Search {
+  const table = tableOf(file, { sheet: sheet?.name ?? null, delimiter });
+  if (!table.ok) return table;
+  const header = findHeader(table.rows);
+  if (header === null) return refuse({ code: 'no-header', found: first.slice(0, 60) });
+  const rows = table.rows.slice(header.index + 1);
+  if (rows.length === 0) return refuse({ code: 'no-rows' });
+  const { cells, line } = table.rows[header.index]!;
+  return { ok: true, found: { sheet, delimiter, header, cells, line, rows } };
 }
 
-/**
- * Finds the line that names the columns: the one of the first hundred lines that holds the most known words, else the
- * first line of words above a line with figures.
- * @returns the index of the row, or null where no line names anything
- */
-export function findHeader(rows: readonly TableRow[]): number | null {
-  let best: { index: number; known: number } | null = null;
-  const head = rows.filter(({ line }) => line <= 100);
-  for (const [index, { cells }] of head.entries()) {
-    if (cells.some((cell) => looksNumeric(cell) || looksLikeTime(cell))) continue;
-    const known = Object.values(columnsByWords(cells)).filter((column) => column !== null).length;
-    if (known >= 2 && known > (best?.known ?? 0)) best = { index, known };
+/** How much a sheet looks like a table of samples: what its header names first, then how long it is. */
+const likeness = (search: Search): number =>
+  search.ok ? search.found.header.names.length * 1e7 + search.found.rows.length : -1;
+
+function search(file: FileRead): Search {
+  if (file.kind === 'text') {
+    const first = headOf(file.text, 1).trim();
+    const delimiter = detectDelimiter(file.text);
+    if (!delimiter) return refuse({ code: 'one-column', found: first.slice(0, 60) });
+    return findTable(file, null, delimiter, first);
   }
-  if (best) return best.index;
-  const words = head.findIndex(
-    ({ cells }, index) =>
-      cells.filter((cell) => cell.trim() !== '').length >= 2 &&
-      !cells.some((cell) => looksNumeric(cell) || looksLikeTime(cell)) &&
-      head[index + 1]?.cells.some(looksNumeric) === true,
+  const found = file.sheets.map((sheet) =>
+    findTable(file, sheet, '\t', sheet.rows[0]?.cells.join(' ').trim() ?? ''),
   );
-  return words === -1 ? null : words;
-}
-
-/** The only column, among those that nothing else claims, whose cells are mostly of a kind. */
-function onlyColumn(
-  rows: readonly TableRow[],
-  free: readonly number[],
-  isOne: (cell: string) => boolean,
-): number | null {
-  const fitting = free.filter((column) => {
-    const filled = rows.map(({ cells }) => cells[column] ?? '').filter((cell) => cell.trim() !== '');
-    return filled.length > 0 && filled.filter(isOne).length >= 0.8 * filled.length;
-  });
-  return fitting.length === 1 ? fitting[0]! : null;
-}
-
-function proposeColumns(header: readonly string[], rows: readonly TableRow[]): Columns {
-  const columns = columnsByWords(header);
-  const some = rows.slice(0, 200);
-  const free = () =>
-    header.map((_, column) => column).filter((column) => !Object.values(columns).includes(column));
-  columns.takenAt ??= onlyColumn(some, free(), looksLikeTime);
-  columns.value ??= onlyColumn(some, free(), looksNumeric);
-  return columns;
+  const best = found.reduce((a, b) => (likeness(b) > likeness(a) ? b : a), refuse({ code: 'empty' }));
+  return best.ok ? best : (found[0] ?? best);
 }
 
 /** The unit in a header such as "NOx [mg/m³]", "Value (°C)" or "Reading, °C". */
@@ -112,19 +67,31 @@ function unitInHeader(header: string | undefined): string | null {
   return (match?.[1] ?? match?.[2])?.trim() ?? null;
 }
 
-function* cellsOf(rows: readonly TableRow[], columns: readonly (number | null)[]): Generator<string> {
-  for (const { cells } of rows) for (const column of columns) if (column !== null) yield cells[column] ?? '';
+function findUnit(
+  { cells, rows }: Found,
+  columns: Columns,
+): { unit: string | null; because: FileEvidence[] } {
+  if (columns.unit !== null) return { unit: '', because: [] };
+  const below = unitInRows(rows, columns);
+  if (below) {
+    const figures = { unit: below.unit, line: below.line };
+    return { unit: below.unit.slice(0, 20), because: [{ of: 'unit', code: 'unit-in-row', figures }] };
+  }
+  const unit = unitInHeader(cells[columns.value ?? -1]);
+  if (unit === null) return { unit, because: [{ of: 'unit', code: 'unit-open', figures: {} }] };
+  return { unit, because: [{ of: 'unit', code: 'unit-in-header', figures: { unit } }] };
 }
 
 /** The method of all soft sensors at the points that the file names, where they share one. */
 function proposeMethod(
   registry: SampleRegistry,
-  names: Iterable<string>,
+  { rows }: Found,
+  column: number | null,
   pointId: number | null,
 ): number | null {
   const ids = new Set(pointId === null ? [] : [pointId]);
-  for (const name of names) {
-    const point = registry.pointsByName.get(name.trim().toLowerCase());
+  for (const { cells } of column === null ? [] : spreadOver(rows)) {
+    const point = registry.pointsByName.get((cells[column!] ?? '').trim().toLowerCase());
     if (point) ids.add(point.id);
   }
   const methods = new Set<number | null>();
@@ -132,40 +99,72 @@ function proposeMethod(
   return methods.size === 1 ? [...methods][0]! : null;
 }
 
+function tableEvidence(file: FileRead, found: Found, { columns, byCells }: ColumnsFound): FileEvidence[] {
+  const because: FileEvidence[] = [];
+  if (file.kind === 'workbook' && file.sheets.length > 1) {
+    const figures = { sheet: found.sheet!.name, rows: found.rows.length, sheets: file.sheets.length };
+    because.push({ of: 'sheet', code: 'sheet-most-like', figures });
+  }
+  const { names } = found.header;
+  because.push(
+    names.length > 0
+      ? { of: 'header', code: 'header-names', figures: { line: found.line, names: names.join(', ') } }
+      : { of: 'header', code: 'header-above-figures', figures: { line: found.line } },
+  );
+  const named = byCells.map((role) => found.cells[columns[role]!]?.trim()).filter(Boolean);
+  if (named.length > 0)
+    because.push({ of: 'columns', code: 'columns-by-cells', figures: { names: named.join(', ') } });
+  return because;
+}
+
+/** Whether a cell of a workbook holds a number, by line and column; null for a text, where every cell is text. */
+function numberTest({ sheet }: Found): ((row: TableRow, column: number) => boolean) | null {
+  if (!sheet) return null;
+  const byLine = new Map(sheet.rows.map(({ line, cells }) => [line, cells]));
+  return ({ line }, column) => typeof byLine.get(line)?.[column] === 'number';
+}
+
 /**
- * Reads from a file how it may be read: what parts its columns, which line names them, what each column holds, the
- * decimal sign and the order of day and month. What the file leaves open stays null, for a person to say.
- * @param text the decoded file
+ * Reads from a file how it may be read: which sheet, what parts its columns, which line names them, what each column
+ * holds, the decimal sign, the order of day and month, the zone, the unit and the words for no result; with what in the
+ * file speaks for it. What the file leaves open stays null, for a person to say.
+ * @param file as taken in
  * @param registry sample points, soft sensors and zone of the site
- * @returns the mapping, or why the text holds no table: `one-column`, `no-header`, `no-rows`, `open-quote`, `stray-quote`
+ * @returns the mapping, or why the file holds no table: `one-column`, `no-header`, `no-rows`, `open-quote`, `stray-quote`
  */
-export function proposeMapping(text: string, registry: SampleRegistry): Proposal {
-  const first = headOf(text, 1).trim();
-  const delimiter = detectDelimiter(text);
-  if (!delimiter) return { ok: false, problem: { code: 'one-column', found: first.slice(0, 60) } };
-  const table = readTable(text, delimiter);
-  if (!table.ok) return table;
-  const at = findHeader(table.rows);
-  if (at === null) return { ok: false, problem: { code: 'no-header', found: first.slice(0, 60) } };
-  const rows = table.rows.slice(at + 1);
-  if (rows.length === 0) return { ok: false, problem: { code: 'no-rows' } };
-  const header = table.rows[at]!.cells;
-  const columns = proposeColumns(header, rows);
-  const some = rows.slice(0, examined);
-  const points = [...registry.pointsByName.values()];
-  const samplePointId = columns.samplePoint === null && points.length === 1 ? points[0]!.id : null;
+export function proposeMapping(file: FileRead, registry: SampleRegistry): Proposal {
+  const searched = search(file);
+  if (!searched.ok) return searched;
+  const { found } = searched;
+  const { rows, delimiter, line } = found;
+  const named = findColumns(found.cells, rows, registry);
+  const { columns } = named;
+  const points = new Map([...registry.pointsByName.values()].map((point) => [point.id, point]));
+  const samplePointId = columns.samplePoint === null && points.size === 1 ? [...points.keys()][0]! : null;
+  const decimal = findDecimal(rows, columns.value, numberTest(found));
+  const times = timeCells(rows, columns);
+  const dateOrder = findDateOrder(times);
+  const zone = findZone(times, dateOrder.value, registry.zone);
+  const unit = findUnit(found, columns);
+  const missing = findMissingWords(rows, columns.value, defaultMissingWords);
   return {
     ok: true,
     proposed: {
+      sheet: found.sheet?.name ?? null,
       delimiter,
-      decimal: columns.value === null ? null : detectDecimal(cellsOf(some, [columns.value])),
-      headerLine: table.rows[at]!.line,
-      dateOrder: detectDateOrder(cellsOf(rows, [columns.takenAt, columns.reportedAt])),
-      zone: registry.zone,
+      decimal: decimal.value,
+      headerLine: line,
+      dateOrder: dateOrder.value,
+      zone: zone.value,
       columns,
       samplePointId,
-      methodId: proposeMethod(registry, new Set(cellsOf(some, [columns.samplePoint])), samplePointId),
-      unit: columns.unit === null ? unitInHeader(header[columns.value ?? -1]) : '',
+      methodId: proposeMethod(registry, found, columns.samplePoint, samplePointId),
+      unit: unit.unit,
+      missingWords: missing.value,
     },
+    because: [
+      ...tableEvidence(file, found, named),
+      ...[decimal, dateOrder, zone, unit, missing].flatMap(({ because }) => because),
+    ],
   };
 }

@@ -6,6 +6,9 @@ import { sayReason } from './sample-sentences.ts';
 // A spreadsheet would run such a cell as a formula; a number that happens to begin with a sign is left a number.
 const runsAsFormula = /^(?![+-]?(?:\d+[.,]?\d*|[.,]\d+)(?:e[+-]?\d+)?$)[=+\-@\t\r]/i;
 
+/** What stands before the columns of the file in a download of refused rows. */
+export const refusedColumns = ['Row', 'Why refused'] as const;
+
 /**
  * The refused rows as they were written, under the header of their file, after the line and the reason: to be mended
  * and taken up again. Cells that a spreadsheet would run as a formula get an apostrophe before them.
@@ -24,7 +27,7 @@ export function refusedCsv(
       reasons.map((reason) => sayReason(reason, mapping.zone)).join(' '),
       ...row.cells,
     ]);
-  const table = [['Row', 'Why refused', ...header], ...refused];
+  const table = [[...refusedColumns, ...header], ...refused];
   const { delimiter } = mapping;
   return `\ufeff${Papa.unparse(table, { delimiter, newline: '\r\n', escapeFormulae: runsAsFormula })}\r\n`;
 }

@@ -1,9 +1,12 @@
-import type { SampleMapping, SampleReason, SampleReasonCode } from '../contracts/sample-import.ts';
-import { wallClock } from './format.ts';
-import { createTimeReader, endOfDay, type TimeRead } from './local-time.ts';
-import { createValueReader } from './sample-number.ts';
-import { expectedUnits, type SampleRegistry, unitKey } from './sample-registry.ts';
+import { flagCodes, holdCodes, type SampleReason } from '../contracts/sample-import.ts';
+import type { Mendable, SampleMends } from '../contracts/sample-mends.ts';
+import { damageOf } from './sample-damage.ts';
+import { createJunkFinder } from './sample-junk.ts';
+import { prepareReading, type Reading, type RowRules } from './sample-reading.ts';
 import type { TableRow } from './sample-table.ts';
+import { type Clock, compositeOf, type Note, reportedOf, type Taken, takenOf } from './sample-taken.ts';
+import { inUnitOf } from './sample-unit.ts';
+import { readTypedResult } from './typed-result.ts';
 
 /** A sample as a row states it, ready to be stored. Instants are UTC milliseconds. */
 export interface SampleDraft {
@@ -17,10 +20,16 @@ export interface SampleDraft {
   qualifier: '<' | '>' | null;
   unit: string;
   asWritten: string;
+  /** What the laboratory wrote, where `value` and `unit` were converted from it. */
+  statedUnit: string | null;
+  statedValue: number | null;
+  /** Single results of which `value` is the mean. */
+  replicates: number[] | null;
+  /** Of a composite: how long it was gathered, ending at `takenAt`. */
+  compositeMs: number | null;
+  /** Empty where no column names one. */
+  analyst: string;
 }
-
-/** When a sample was taken: an instant, or a day where no time of day is known. */
-export type Taken = { at: number; on: null } | { at: null; on: string };
 
 /** A row of the file with all that was found in it. `sample` is null where a reason refuses the row. */
 export interface ReadRow {
@@ -29,179 +38,169 @@ export interface ReadRow {
   taken: Taken | null;
   reasons: SampleReason[];
   sample: SampleDraft | null;
+  /** What a person wrote in place of cells. */
+  mend?: SampleMends[string] | undefined;
 }
 
-export interface RowRules {
-  mapping: SampleMapping;
-  registry: SampleRegistry;
-  /** Unit of the chosen method; null without a method. */
-  methodUnit: string | null;
-  header: readonly string[];
-  /** The present instant, UTC milliseconds. */
-  now: number;
-}
-
-const aheadMs = 10 * 60_000;
 const longestNumber = 80;
-type Note = (code: SampleReasonCode, figures?: SampleReason['figures']) => void;
+const sameMinuteMs = 60_000;
+const flags = new Set<string>(flagCodes);
+const holds = new Set<string>(holdCodes);
+
+/** A sample goes in with such a reason, and carries it as a flag. */
+export const isFlag = (code: string): boolean => flags.has(code);
+
+/** A sample goes in with such a reason, but is held. */
+export const isHold = (code: string): boolean => holds.has(code);
 
 /** The text of a cell that a role is mapped to; empty where the role has no column. */
 export const cellAt = (cells: readonly string[], column: number | null): string =>
   column === null ? '' : (cells[column] ?? '').trim();
 
+type TextOf = (part: Mendable) => string;
+
 /**
  * Makes a reader that turns a row into a sample, or says everything that speaks against it. Rows are judged one by one
  * here; what only others can show (repeats, results stored before) is for `decideRows`.
- * @returns a function from row to its sample and reasons: `censored` and `date-only` are flags, any other refuses
+ * @returns a function from a row, and its place below the header, to its sample and reasons: a row that is no sample or
+ * is left out is skipped, flags let it in, any other reason refuses
  */
-export function createRowReader(rules: RowRules): (row: TableRow) => ReadRow {
-  const { mapping, registry, header } = rules;
-  const { columns } = mapping;
-  const readTime = createTimeReader({ order: mapping.dateOrder, zone: mapping.zone });
-  const readValue = createValueReader(mapping.decimal);
-  const width = header.findLastIndex((name) => name.trim() !== '') + 1;
-  const today = dayOn(rules.now, registry.zone);
-  const unitsAt = rememberUnits(rules);
-
-  return (row) => {
+export function createRowReader(rules: RowRules): (row: TableRow, place: number) => ReadRow {
+  const { mapping, header, mends = {} } = rules;
+  const reading = prepareReading(rules);
+  const junkIn = createJunkFinder(header, mapping.columns);
+  return (row, place) => {
     const { cells } = row;
-    const reasons: SampleReason[] = [];
-    const note: Note = (code, figures = {}) => reasons.push({ code, figures });
-    const samplePointId = pointOf(rules, cells, note);
-    if (cells.length < width || cells.slice(header.length).some((cell) => cell.trim() !== '')) {
-      const ragged: SampleReason = { code: 'ragged', figures: { expected: width, found: cells.length } };
-      return { row, samplePointId, taken: null, reasons: [ragged], sample: null };
+    const mend = mends[row.line];
+    if (mend?.leaveOut) return withoutSample(row, mend, { code: 'left-out', figures: {} });
+    const junk = mend ? null : junkIn(row, place);
+    if (junk) return withoutSample(row, mend, junk);
+    if (cells.length < reading.width || cells.slice(header.length).some((cell) => cell.trim() !== '')) {
+      const figures = { expected: reading.width, found: cells.length };
+      return withoutSample(row, mend, { code: 'ragged', figures });
     }
-    const taken = takenOf(readTime, cellAt(cells, columns.takenAt), today, rules.now, note);
-    const reportedAt = reportedOf(readTime, cellAt(cells, columns.reportedAt), taken, rules, note);
-    const asWritten = cells[columns.value] ?? '';
-    const value = valueOf(readValue(asWritten), asWritten, note);
-    const stated = cellAt(cells, columns.unit) || mapping.unit;
-    const unit = samplePointId === null ? stated : unitOf(stated, unitsAt(samplePointId), note);
-    const written = cellAt(cells, columns.sampleNumber);
-    if (written.length > longestNumber) note('long-number', { length: written.length, most: longestNumber });
-    if (
-      samplePointId === null ||
-      !taken ||
-      reportedAt === null ||
-      !value ||
-      reasons.some(({ code }) => !isFlag(code))
-    ) {
-      return { row, samplePointId, taken, reasons, sample: null };
-    }
-    const sampleNumber = written || (taken.on ?? new Date(taken.at!).toISOString().replace('.000Z', 'Z'));
-    const when = { takenAt: taken.at, takenOn: taken.on, reportedAt };
-    const sample = { samplePointId, sampleNumber, ...when, ...value, unit, asWritten };
-    return { row, samplePointId, taken, reasons, sample };
+    return readSample(reading, row, mend);
   };
 }
 
-/** A sample goes in with such a reason, and carries it as a flag. */
-export const isFlag = (code: SampleReasonCode): boolean => code === 'censored' || code === 'date-only';
+const withoutSample = (
+  row: TableRow,
+  mend: SampleMends[string] | undefined,
+  reason: SampleReason,
+): ReadRow => ({
+  row,
+  samplePointId: null,
+  taken: null,
+  reasons: [reason],
+  sample: null,
+  mend,
+});
 
-function rememberUnits({ registry, methodUnit }: RowRules): (samplePointId: number) => string[] {
-  const known = new Map<number, string[]>();
-  return (samplePointId) => {
-    const units = known.get(samplePointId) ?? expectedUnits(registry, samplePointId, methodUnit);
-    known.set(samplePointId, units);
-    return units;
+function readSample(reading: Reading, row: TableRow, mend: SampleMends[string] | undefined): ReadRow {
+  const { rules, missing } = reading;
+  const { columns } = rules.mapping;
+  const reasons: SampleReason[] = [];
+  const note: Note = (code, figures = {}) => reasons.push({ code, figures });
+  const filled = (text: string) => (text !== '' && missing.has(text.toLowerCase()) ? '' : text);
+  const textOf: TextOf = (part) => filled(mend?.[part]?.trim() ?? cellAt(row.cells, columns[part]));
+  const samplePointId = pointOf(reading, textOf('samplePoint'), note);
+  const times = timesOf(reading, row, mend, textOf, note);
+  const asWritten = mend?.value ?? row.cells[columns.value] ?? '';
+  const read = valueOf(reading, asWritten, mend?.value !== undefined, note);
+  const stated = textOf('unit') || rules.mapping.unit;
+  const expected = samplePointId === null ? [] : reading.unitsAt(samplePointId);
+  const unit = inUnitOf(read?.value ?? null, stated, expected, note);
+  const written = mend?.sampleNumber?.trim() ?? cellAt(row.cells, columns.sampleNumber);
+  checkNumber(written, rules.mapping.sheet !== null, note);
+  const { taken, reportedAt, compositeMs } = times;
+  const refused = reasons.some(({ code }) => !isFlag(code));
+  if (samplePointId === null || !taken || reportedAt === null || !read || !unit || refused) {
+    return { row, samplePointId, taken, reasons, sample: null, mend };
+  }
+  const sample: SampleDraft = {
+    samplePointId,
+    sampleNumber: written || (taken.on ?? new Date(taken.at!).toISOString().replace('.000Z', 'Z')),
+    takenAt: taken.at,
+    takenOn: taken.on,
+    reportedAt,
+    qualifier: read.qualifier,
+    asWritten,
+    ...unit,
+    replicates: null,
+    compositeMs,
+    analyst: cellAt(row.cells, columns.analyst),
   };
+  return { row, samplePointId, taken, reasons, sample, mend };
 }
 
-function pointOf({ mapping, registry }: RowRules, cells: readonly string[], note: Note): number | null {
-  const name = cellAt(cells, mapping.columns.samplePoint);
+function pointOf({ rules }: Reading, name: string, note: Note): number | null {
+  const { mapping, registry } = rules;
   if (name === '') {
     if (mapping.samplePointId === null) note('no-point');
     return mapping.samplePointId;
   }
-  const point = registry.pointsByName.get(name.toLowerCase());
+  const point = registry.pointsByName.get(name.replace(/\s+/g, ' ').toLowerCase());
   if (!point) note('unknown-point', { point: name });
   return point?.id ?? null;
 }
 
-const dayOn = (at: number, zone: string): string => {
-  const { year, month, day } = wallClock(at, zone);
-  return `${year}-${String(month).padStart(2, '0')}-${String(day).padStart(2, '0')}`;
-};
-
-type TimeReader = (text: string) => TimeRead;
-
-function takenOf(readTime: TimeReader, text: string, today: string, now: number, note: Note): Taken | null {
-  if (text === '') {
-    note('no-time');
-    return null;
-  }
-  const read = readTime(text);
-  if (read.ok) return inRange(read.at, 'taken', text, now, note) ? { at: read.at, on: null } : null;
-  if (read.code !== 'no-time-of-day') {
-    note(read.code, { ...read.figures, written: text, column: 'taken' });
-    return null;
-  }
-  const on = String(read.figures.on);
-  if (on > today) note('ahead', { written: text, column: 'taken' });
-  else if (on < '1970-01-01') note('before-1970', { written: text, column: 'taken' });
-  else note('date-only', { on });
-  return { at: null, on };
+interface Times {
+  taken: Taken | null;
+  reportedAt: number | null;
+  compositeMs: number | null;
 }
 
-function inRange(at: number, column: string, written: string, now: number, note: Note): boolean {
-  if (at > now + aheadMs) note('ahead', { written, column });
-  else if (at < 0) note('before-1970', { written, column });
-  else return true;
-  return false;
-}
-
-/** A day of reporting without a time stands for its end; no reporting time at all for the moment of taking. */
-function reportedOf(
-  readTime: TimeReader,
-  text: string,
-  taken: Taken | null,
-  rules: RowRules,
+function timesOf(
+  reading: Reading,
+  { cells }: TableRow,
+  mend: SampleMends[string] | undefined,
+  textOf: TextOf,
   note: Note,
-): number | null {
-  const { now, mapping } = rules;
-  if (text === '') {
-    if (!taken) return null;
-    return taken.at ?? Math.min(now, endOfDay(taken.on, mapping.zone));
+): Times {
+  const { rules, others } = reading;
+  const { columns } = rules.mapping;
+  // What a person wrote is a whole time; a column with the time of day is then of no account.
+  const ofDay = mend?.takenAt === undefined ? cellAt(cells, columns.takenTime) : '';
+  const point = takenOf(clockFor(reading, mend?.takenAt), textOf('takenAt'), ofDay, note);
+  const words = point?.at ? others.map((column) => cellAt(cells, column)) : [];
+  const from = cellAt(cells, columns.takenFrom);
+  const { taken, compositeMs } = compositeOf(reading.clock, from, words, point, note);
+  const reported = textOf('reportedAt');
+  const reportedAt = reportedOf(clockFor(reading, mend?.reportedAt), reported, taken, note);
+  if (taken?.at != null) {
+    const { uploadedAt } = rules;
+    if (reported !== '' && reportedAt === taken.at) note('like-report-time', { like: 'report' });
+    else if (uploadedAt !== undefined && Math.abs(taken.at - uploadedAt) < sameMinuteMs)
+      note('like-report-time', { like: 'upload' });
   }
-  const read = readTime(text);
-  let at: number;
-  if (read.ok) at = read.at;
-  else if (read.code === 'no-time-of-day')
-    at = Math.min(endOfDay(String(read.figures.on), mapping.zone), now);
-  else {
-    note(read.code, { ...read.figures, written: text, column: 'reported' });
-    return null;
-  }
-  if (!inRange(at, 'reported', text, now, note)) return null;
-  if (taken && (taken.at === null ? dayOn(at, mapping.zone) < taken.on : at < taken.at)) {
-    note('reported-before-taken', { reported: text });
-  }
-  return at;
+  return { taken, reportedAt, compositeMs };
 }
 
-function valueOf(
-  read: ReturnType<ReturnType<typeof createValueReader>>,
-  written: string,
-  note: Note,
-): Pick<SampleDraft, 'value' | 'qualifier'> | null {
-  if (read.kind === 'missing') note('no-value', { written: written.trim() });
-  else if (read.kind === 'text') note('text-value', { written: written.trim().slice(0, 60) });
-  else if (read.kind === 'value') return { value: read.value, qualifier: null };
-  else {
+/** Whatever the order of a file, a person may write an ISO time. */
+const clockFor = ({ clock, isoClock }: Reading, mended: string | undefined): Clock =>
+  mended !== undefined && /^\s*\d{4}-/.test(mended) ? isoClock : clock;
+
+type Result = { value: number; qualifier: '<' | '>' | null };
+
+function valueOf({ readValue }: Reading, written: string, typed: boolean, note: Note): Result | null {
+  const read = readValue(written);
+  if (read.kind === 'value') return { value: read.value, qualifier: null };
+  if (read.kind === 'censored') {
     note('censored', { qualifier: read.qualifier });
     return { value: read.value, qualifier: read.qualifier };
   }
+  const byHand = typed && read.kind === 'text' ? readTypedResult(written) : null;
+  if (byHand?.ok) {
+    if (byHand.qualifier) note('censored', { qualifier: byHand.qualifier });
+    return { value: byHand.value, qualifier: byHand.qualifier };
+  }
+  if (read.kind === 'missing') note('no-value', { written: written.trim() });
+  else note('text-value', { written: written.trim().slice(0, 60) });
   return null;
 }
 
-/** The unit in the spelling of the site; what differs from it is refused, never converted silently. */
-function unitOf(stated: string, expected: readonly string[], note: Note): string {
-  if (expected.length === 0) return stated;
-  const known = expected.find((unit) => unitKey(unit) === unitKey(stated));
-  if (known !== undefined) return known;
-  const wanted = expected.join(' or ');
-  if (stated === '') note('no-unit', { expected: wanted });
-  else note('other-unit', { unit: stated.slice(0, 40), expected: wanted });
-  return stated;
+function checkNumber(written: string, inWorkbook: boolean, note: Note): void {
+  if (written.length > longestNumber) note('long-number', { length: written.length, most: longestNumber });
+  const damage = damageOf(written, inWorkbook);
+  if (damage) note('damaged-number', { written: written.slice(0, 40), damage });
 }

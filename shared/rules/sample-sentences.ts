@@ -1,110 +1,8 @@
-import type {
-  ProposedMapping,
-  SampleCounts,
-  SampleOutcome,
-  SampleReason,
-  SampleReasonCode,
-} from '../contracts/sample-import.ts';
-import {
-  formatClock,
-  formatCount,
-  formatDate,
-  formatInstant,
-  monthNames,
-  plural,
-  zoneOffsetMinutes,
-} from './format.ts';
+import type { ProposedMapping, SampleCounts, SampleOutcome } from '../contracts/sample-import.ts';
+import { formatCount, plural } from './format.ts';
 import type { Encoding, FileProblem } from './sample-text.ts';
 
-type Figures = SampleReason['figures'];
-
-/** Offset of a zone at an instant as a file would write it: "+02:00". */
-function offsetText(instant: string, zone: string): string {
-  const minutes = zoneOffsetMinutes(instant, zone);
-  const two = (count: number) => String(count).padStart(2, '0');
-  return `${minutes < 0 ? '-' : '+'}${two(Math.floor(Math.abs(minutes) / 60))}:${two(Math.abs(minutes) % 60)}`;
-}
-
-const clockWithOffset = (instant: string, zone: string) =>
-  `${formatClock(instant, zone)}${offsetText(instant, zone)}`;
-const whichTime = ({ column }: Figures) =>
-  column === 'reported' ? 'The time of reporting' : 'The time of taking';
-
-function impossibleDate({ day, month, year, column }: Figures): string {
-  const name = monthNames[Number(month) - 1];
-  const where = column === 'reported' ? ' (in the time of reporting)' : '';
-  if (!name) return `There is no month ${month}${where}. Is the order of day and month the other way round?`;
-  const leap = month === 2 && day === 29 ? ` ${year}` : '';
-  return `${day} ${name}${leap} does not exist${where}. Write the right date in the file.`;
-}
-
-function skippedOrDouble(code: 'missing-hour' | 'double-hour', figures: Figures, zone: string): string {
-  const earlier = String(figures.earlier);
-  const later = String(figures.later);
-  const either = `${clockWithOffset(earlier, zone)} or ${clockWithOffset(later, zone)}`;
-  if (code === 'missing-hour') {
-    return `“${figures.written}” did not occur: the clocks were put forward. Write the time that is meant, ${either}.`;
-  }
-  return (
-    `${whichTime(figures)} “${figures.written}” occurred twice, as the clocks were put back: at ${formatClock(earlier, 'UTC')} and ` +
-    `${formatClock(later, 'UTC')} UTC. Write it with its offset, ${either}.`
-  );
-}
-
-function storedDiffers(figures: Figures, zone: string): string {
-  const taken = String(figures.taken);
-  const when = taken.length === 10 ? formatDate(taken, zone) : formatInstant(taken, zone);
-  const limit = figures.qualifier === '' ? '' : `${figures.qualifier} `;
-  const stands = `${limit}${figures.value} ${figures.unit}`.trim();
-  if (figures.differs === 'method') {
-    return `This sample is stored with another method, or with none where this file has one (${stands}, taken ${when}).`;
-  }
-  return `This sample is stored with another ${figures.differs}: ${stands}, taken ${when}. A file does not overwrite a stored result.`;
-}
-
-const sentences: Record<SampleReasonCode, (figures: Figures, zone: string) => string> = {
-  ragged: ({ expected, found }) =>
-    `${plural(Number(found), 'cell')} where the header has ${formatCount(Number(expected))}. Is a delimiter missing, or is one inside a text without quotation marks?`,
-  'no-value': ({ written }) =>
-    `No value${written === '' ? '' : `, only “${written}”`}. Write it in the file, or leave the row out.`,
-  'text-value': ({ written }) => `“${written}” is no number as this file writes them.`,
-  'no-time': () => 'No time of taking. Write it in the file.',
-  'unreadable-time': (figures) =>
-    `${whichTime(figures)}, “${figures.written}”, can’t be read. One looks like 2026-11-29 06:00.`,
-  'impossible-date': impossibleDate,
-  'impossible-time': (figures) => `${whichTime(figures)}, “${figures.written}”, is no time of day.`,
-  'missing-hour': (figures, zone) => skippedOrDouble('missing-hour', figures, zone),
-  'double-hour': (figures, zone) => skippedOrDouble('double-hour', figures, zone),
-  ahead: (figures) =>
-    `${whichTime(figures)}, “${figures.written}”, is still to come. Check date, order of day and month, and zone.`,
-  'before-1970': (figures) =>
-    `${whichTime(figures)}, “${figures.written}”, lies before 1970. Check the year.`,
-  'reported-before-taken': ({ reported }) =>
-    `Reported before it was taken (“${reported}”). One of the two times is wrong.`,
-  'no-point': () => 'No sample point. Write it in the file, or choose one for the whole file.',
-  'unknown-point': ({ point }) =>
-    `There is no sample point ${point} at this site. Add it under Points and methods, or correct the name.`,
-  'no-unit': ({ expected }) => `No unit; samples of this point are in ${expected}.`,
-  'other-unit': ({ unit, expected }) =>
-    `In ${unit}, but samples of this point are in ${expected}. Nothing is converted.`,
-  'long-number': ({ length, most }) => `The sample number has ${length} characters; ${most} are the most.`,
-  'other-value-in-file': ({ line, value, unit }) =>
-    `Row ${formatCount(Number(line))} gives this sample as ${`${value} ${unit}`.trim()}. Keep the right one of the two.`,
-  'stored-differs': storedDiffers,
-  'same-row': ({ line }) => `The same sample as row ${formatCount(Number(line))}.`,
-  unchanged: () => 'Stored before, unchanged.',
-  censored: ({ qualifier }) =>
-    `${qualifier === '<' ? 'Below' : 'Above'} the method’s range: kept, not used to judge the estimate.`,
-  'date-only': () => 'A date without a time: kept, never compared with the estimate.',
-};
-
-/**
- * Says why a row fares as it does and what to do about it.
- * @param reason the code with its figures
- * @param zone IANA zone in which the file is read
- */
-export const sayReason = ({ code, figures }: SampleReason, zone: string): string =>
-  sentences[code](figures, zone);
+export { sayReason } from './sample-reason-sentences.ts';
 
 /** The words of an outcome. */
 export const outcomeWords: Record<SampleOutcome, string> = {
@@ -144,15 +42,20 @@ const orderWords = {
   'day-month-year': 'day before month',
   'month-day-year': 'month before day',
   'epoch-ms': 'milliseconds since 1970',
+  'serial-days': 'days as spreadsheets count them',
 };
 
-/** How a file is read: "Read as UTF-8, semicolons, decimal commas, day before month." */
+/** How a file is read: "Read as UTF-8, semicolons, decimal commas, day before month.", "Read as a workbook, sheet Week 48." */
 export function sayReading(
-  encoding: Encoding,
-  mapping: Pick<ProposedMapping, 'delimiter' | 'decimal' | 'dateOrder'>,
+  encoding: Encoding | null,
+  mapping: Pick<ProposedMapping, 'delimiter' | 'decimal' | 'dateOrder'> & { sheet?: string | null },
 ): string {
-  const parts = [encodingWords[encoding], delimiterWords[mapping.delimiter]];
-  if (mapping.decimal) parts.push(mapping.decimal === ',' ? 'decimal commas' : 'decimal points');
+  const parts =
+    encoding === null
+      ? ['a workbook', `sheet ${mapping.sheet}`]
+      : [encodingWords[encoding], delimiterWords[mapping.delimiter]];
+  if (mapping.decimal && encoding !== null)
+    parts.push(mapping.decimal === ',' ? 'decimal commas' : 'decimal points');
   if (mapping.dateOrder) parts.push(orderWords[mapping.dateOrder]);
   return `Read as ${parts.join(', ')}.`;
 }
@@ -164,6 +67,18 @@ export function sayFileProblem(problem: FileProblem): string {
       return 'This file is empty. Export it again and send it once more.';
     case 'spreadsheet':
       return 'This is a workbook, not a CSV. In the spreadsheet choose “Save as” and the type CSV, then send that file.';
+    case 'old-workbook':
+      return 'This is a workbook of an old kind (.xls or .xlsb). In the spreadsheet choose “Save as” and the type XLSX or CSV, then send that file.';
+    case 'locked-workbook':
+      return 'This workbook is locked with a password. Save it without one, then send it again.';
+    case 'damaged-workbook':
+      return 'This workbook is damaged and can’t be read. Open it in the spreadsheet, save it anew, then send it again.';
+    case 'large-workbook':
+      return 'This workbook unpacks to more than can be read at once. Save the sheet with the results as CSV, then send that file.';
+    case 'other-archive':
+      return 'This is an archive or a document, no workbook and no CSV. Send the file with the results itself.';
+    case 'no-sheet':
+      return `This workbook has no sheet “${problem.sheet}”. Choose another.`;
     case 'document':
       return 'This is a PDF, not a CSV. Ask the laboratory for the results as CSV.';
     case 'web-page':

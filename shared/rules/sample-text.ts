@@ -8,6 +8,8 @@ export type Delimiter = z.infer<typeof delimiter>;
 /** Why a file holds no table of samples at all. `line` counts from 1. */
 export type FileProblem =
   | { code: 'empty' | 'spreadsheet' | 'document' | 'web-page' | 'binary' | 'no-rows' | 'too-many-columns' }
+  | { code: 'old-workbook' | 'locked-workbook' | 'damaged-workbook' | 'large-workbook' | 'other-archive' }
+  | { code: 'no-sheet'; sheet: string }
   | { code: 'one-column' | 'no-header'; found: string }
   | { code: 'open-quote' | 'stray-quote'; line: number };
 
@@ -26,6 +28,10 @@ const signatures: [bytes: number[], code: 'spreadsheet' | 'document' | 'binary']
   [[0x1f, 0x8b], 'binary'],
 ];
 
+/** Bytes 80 to 9F of windows-1252 (WHATWG Encoding Standard), which some decoders of Node.js take for control characters. */
+const windowsSigns = '€\u0081‚ƒ„…†‡ˆ‰Š‹Œ\u008dŽ\u008f\u0090‘’“”•–—˜™š›œ\u009džŸ';
+const ofWindows = (sign: string): string => windowsSigns[sign.charCodeAt(0) - 0x80]!;
+
 /**
  * Turns the bytes of an uploaded file into text: UTF-16 where a byte order mark or the pattern of zero bytes says so,
  * else UTF-8 where every byte fits it, else windows-1252. Nothing is replaced silently.
@@ -39,7 +45,8 @@ export function decodeFile(bytes: Uint8Array): Decoded {
     if (start.every((byte, index) => bytes[index] === byte)) return refuse(code);
   }
   const encoding = encodingOf(bytes);
-  const text = new TextDecoder(encoding).decode(bytes);
+  const decoded = new TextDecoder(encoding).decode(bytes);
+  const text = encoding === 'windows-1252' ? decoded.replace(/[\u0080-\u009f]/g, ofWindows) : decoded;
   if (/^\s*<(!doctype|html|head|body|table|\?xml)\b/i.test(text.slice(0, 500))) return refuse('web-page');
   if (text.trim() === '') return refuse('empty');
   if (hasControlCharacters(text)) return refuse('binary');

@@ -242,10 +242,10 @@ describe('what is stored already', () => {
     ]);
     expect(wordsOf(rowAt(view, 2))).toBe('Stored before, unchanged.');
     expect(wordsOf(rowAt(view, 3))).toBe(
-      'This sample is stored with another value: 1481 °C, taken 29 Nov 2026 07:00. A file does not overwrite a stored result.',
+      'This sample is stored with another value: 1481 °C, taken 29 Nov 2026 07:00. A file does not overwrite a stored result: record a correction or a re-test under Samples, or leave the row out.',
     );
     expect(wordsOf(rowAt(view, 4))).toBe(
-      'This sample is stored with another time: 1482 °C, taken 29 Nov 2026 08:00. A file does not overwrite a stored result.',
+      'This sample is stored with another time: 1482 °C, taken 29 Nov 2026 08:00. A file does not overwrite a stored result: record a correction or a re-test under Samples, or leave the row out.',
     );
   });
 

@@ -1,4 +1,5 @@
 import { beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { noColumns } from '../../shared/rules/sample-mapping.ts';
 import { sayCounts } from '../../shared/rules/sample-sentences.ts';
 import {
   type Laboratory,
@@ -122,13 +123,13 @@ describe('a row of a dry run', () => {
     [
       'an unknown point',
       { point: 'K9' },
-      'There is no sample point K9 at this site. Add it under Points and methods, or correct the name.',
+      'There is no sample point K9 at this site. Say which point it is, or add it under Points and methods.',
     ],
     ['no point', { point: '' }, 'No sample point. Write it in the file, or choose one for the whole file.'],
     [
-      'another unit than the soft sensor’s',
-      { unit: '°F' },
-      'In °F, but samples of this point are in °C. Nothing is converted.',
+      'a unit of another kind than the soft sensor’s',
+      { unit: 'bar' },
+      'In bar, but samples of this point are in °C. It can’t be converted: the two are of different kinds.',
     ],
     ['no unit', { unit: '' }, 'No unit; samples of this point are in °C.'],
     [
@@ -198,17 +199,19 @@ describe('a row of a dry run', () => {
       samplePoint: 'Tarnby',
       goesTo: ['Tarnby TY'],
       reasons: [],
+      stored: false,
+      inFile: {},
     });
   });
 
-  it('that repeats another of the file is skipped, and that contradicts another is refused, as that is', async () => {
+  it('that repeats another of the file is skipped, and that contradicts another in its time is refused, as that is', async () => {
     const view = await lab.upload(
       [
         header,
         'A-1;29.11.2026 06:00;;1480,0;°C;Tarnby',
         'A-1;29.11.2026 06:00;;1480,0;°C;TARNBY',
         'A-2;29.11.2026 07:00;;1480,5;°C;Tarnby',
-        'A-2;29.11.2026 07:00;;1499,0;°C;Tarnby',
+        'A-2;29.11.2026 07:10;;1499,0;°C;Tarnby',
       ].join('\n'),
     );
     expect(wordsOf(rowAt(view, 3))).toBe('The same sample as row 2.');
@@ -274,7 +277,7 @@ describe('what a file shows by itself', () => {
 
 describe('a mapping', () => {
   const file = 'id,taken,value\nA,2026-11-29 06:00,1480.5\n';
-  const columns = { sampleNumber: 0, takenAt: 1, reportedAt: null, value: 2, unit: null, samplePoint: null };
+  const columns = { ...noColumns, sampleNumber: 0, takenAt: 1, value: 2 };
 
   it.each([
     [
@@ -333,7 +336,8 @@ describe('a mapping', () => {
       .send({ name: 'Thermocouple', quantity: '', unit: 'K', repeatability: null, reproducibility: null })
       .expect(200);
     const view = await lab.dryRun(file, { methodId: body.id });
-    expect(wordsOf(rowAt(view, 2))).toBe('In °C, but samples of this point are in K. Nothing is converted.');
+    expect(wordsOf(rowAt(view, 2))).toBe('Converted from 1,480.5\u00a0°C to 1,753.65\u00a0K.');
+    expect(rowAt(view, 2)).toMatchObject({ outcome: 'added-with-flag', value: '1480.5', unit: '°C' });
   });
 
   it('that somebody else said meanwhile is shown instead of overwritten', async () => {

@@ -31,6 +31,7 @@ describe('sample points', () => {
         unitId: lab.unitId,
         unitName: 'Tarnby',
         name: 'Tarnby',
+        aliases: [],
         archivedAt: null,
         version: 1,
         goesTo: [
@@ -57,6 +58,34 @@ describe('sample points', () => {
     const answer = await lab.technician.post(points).send({ name: 'TARNBY', unitId: null }).expect(400);
     const message = 'There is a sample point TARNBY at this site already. Choose another name.';
     expect(problemOf(answer).fields).toEqual([{ path: 'name', message }]);
+  });
+
+  it('go by other names, each of which leads to one point only', async () => {
+    const add = (name: string, aliases: string[]) =>
+      lab.technician.post(points).send({ name, unitId: null, aliases });
+    const added = await add('KX-20', ['Crown 20', 'kx20']).expect(200);
+    expect(added.body.aliases).toEqual(['Crown 20', 'kx20']);
+    const refused = async (name: string, aliases: string[]) =>
+      problemOf(await add(name, aliases).expect(400)).fields;
+    expect(await refused('crown 20', [])).toEqual([
+      { path: 'name', message: 'KX-20 goes by the name crown 20 already. Take it from there first.' },
+    ]);
+    expect(await refused('KX-21', ['kx-20'])).toEqual([
+      {
+        path: 'aliases',
+        message: 'There is a sample point kx-20 at this site already. Choose another name.',
+      },
+    ]);
+    expect(await refused('KX-21', ['Twice', 'twice'])).toEqual([
+      { path: 'aliases', message: 'twice stands here twice. Write each name once.' },
+    ]);
+    const change = (body: object, version: number) =>
+      lab.technician
+        .put(`/api/v1/sample-points/${added.body.id}`)
+        .send({ name: 'KX-20', unitId: null, archived: false, version, ...body });
+    expect((await change({}, 1).expect(200)).body.aliases).toEqual(['Crown 20', 'kx20']);
+    expect((await change({ aliases: [] }, 2).expect(200)).body.aliases).toEqual([]);
+    await add('crown 20', []).expect(200);
   });
 
   it('stay in use while a soft sensor takes its samples there', async () => {
@@ -96,6 +125,18 @@ describe('methods', () => {
       .send({ ...method, name: 'tarnby' })
       .expect(400);
     expect(problemOf(twice).fields![0]!.path).toBe('name');
+  });
+
+  it('can’t have an R below their r', async () => {
+    const body = { ...method, name: 'M3', repeatability: 5.1, reproducibility: 4 };
+    const message =
+      'R (4) can’t be below r (5.1): two laboratories differ at least as much as one differs from itself.';
+    const answer = await lab.technician.post(methods).send(body).expect(400);
+    expect(problemOf(answer).fields).toEqual([{ path: 'reproducibility', message }]);
+    await lab.technician
+      .post(methods)
+      .send({ ...body, reproducibility: 5.1 })
+      .expect(200);
   });
 
   it('no longer go with new files once archived', async () => {

@@ -59,7 +59,7 @@ describe('a file of samples', () => {
     const plant = await makePlant(server);
     server.now.value = at(24 * 300);
     const technician = await technicianAt(plant);
-    const view = await uploaded(
+    const open = await uploaded(
       technician,
       plant.siteId,
       file([
@@ -76,6 +76,14 @@ describe('a file of samples', () => {
         'A10;01.01.2030 06:00;12,5;P1',
       ]),
     );
+    // One row stands in the hour that the clocks of the site leave out, so the zone is for a person to say.
+    expect(open).toMatchObject({ outcome: null, import: { mapping: null } });
+    const mapping = { ...open.preview.proposed, zone: 'Europe/Copenhagen' };
+    const said = await technician
+      .put(`/api/v1/sample-imports/${open.import.id}/mapping`)
+      .send({ mapping, version: open.import.version })
+      .expect(200);
+    const view: View = said.body;
     expect(view.import.counts).toEqual({ rows: 11, added: 3, flagged: 2, held: 0, skipped: 1, refused: 7 });
     expect(reasonsOf(view)).toEqual({
       2: 'added',
@@ -227,7 +235,7 @@ describe('a file of samples', () => {
 describe('a file that holds no samples', () => {
   it.each([
     ['of 0 bytes', '', /0 bytes/],
-    ['that is a workbook', Buffer.from([0x50, 0x4b, 3, 4, 20, 0, 0, 0]), /workbook, not a CSV/],
+    ['that is a workbook', Buffer.from([0x50, 0x4b, 3, 4, 20, 0, 0, 0]), /workbook is damaged/],
     ['that is a web page', '<!doctype html><html><body>Sign in</body></html>', /web page, not a CSV/],
     ['with one column', 'just words\nand more words\n', /Only one column/],
     ['without a header', '1;2;3\n4;5;6\n', /No line names the columns/],

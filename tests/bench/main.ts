@@ -5,9 +5,11 @@ import { judgingFigures } from './judging.ts';
 import { filterFigures } from './filters.ts';
 import { historyFigures } from './history-import.ts';
 import { replayFigures } from './replay.ts';
+import { sampleFigures } from './sample-import.ts';
 
 const suites: Record<string, () => Promise<Figure[]>> = {
   history: () => historyFigures(databaseUrl()),
+  samples: () => sampleFigures(databaseUrl()),
   board: () => boardFigures(databaseUrl()),
   replay: () => replayFigures(databaseUrl()),
   client: clientFigures,

@@ -2,6 +2,7 @@ import request from 'supertest';
 import { makeLink } from '../../server/features/people/sign-in.ts';
 import { persons } from '../../server/db/schema/index.ts';
 import type { EndpointName } from '../../shared/contracts/index.ts';
+import { noColumns } from '../../shared/rules/sample-mapping.ts';
 import { sheetFields } from './sheet-fields.ts';
 import { addSiteRows, type SiteRows } from './site-rows.ts';
 import { type Agent, origin, password, type TestServer } from './server.ts';
@@ -46,7 +47,9 @@ const mapping = {
   delimiter: ';',
   decimal: ',',
   unit: '°C',
-  columns: { sampleNumber: 0, takenAt: 1, reportedAt: null, value: 2, unit: null, samplePoint: null },
+  columns: { ...noColumns, sampleNumber: 0, takenAt: 1, value: 2 },
+  sheet: null,
+  missingWords: ['n/a'],
 };
 const period = { from: '2026-10-01T00:00:00Z', to: '2026-11-02T00:00:00Z' };
 
@@ -74,7 +77,9 @@ export const changes: Partial<Record<EndpointName, Send>> = {
     s.administrator.post(v1(`/people/${s.technician.personId}/password-links`)).send({}),
   'sites.add': (s) => s.administrator.post(v1('/sites')).send({ name: 'New Works', zone: 'UTC' }),
   'sites.change': (s) =>
-    s.administrator.put(v1(`/sites/${s.siteId}`)).send({ name: 'Tarnby Works', zone: 'UTC', ...now }),
+    s.administrator
+      .put(v1(`/sites/${s.siteId}`))
+      .send({ name: 'Tarnby Works', zone: 'UTC', shifts: [{ name: 'Day', from: '06:00' }], ...now }),
   'areas.add': (s) => s.engineer.post(v1(`/sites/${s.siteId}/areas`)).send({ name: 'New area' }),
   'areas.change': (s) => s.engineer.put(v1(`/areas/${s.areaId}`)).send({ name: 'Hot end', ...now }),
   'units.add': (s) =>
@@ -177,6 +182,36 @@ export const changes: Partial<Record<EndpointName, Send>> = {
   'methods.add': (s) => s.technician.post(v1(`/sites/${s.siteId}/methods`)).send(method('Pyrometry')),
   'methods.change': (s) =>
     s.technician.put(v1(`/methods/${s.methodId}`)).send({ ...method('Titration'), ...now }),
+  'checkStandards.add': (s) =>
+    s.technician
+      .post(v1(`/methods/${s.methodId}/check-standards`))
+      .send({ name: 'Gold point', acceptedValue: '1064,2' }),
+  'checkStandards.change': (s) =>
+    s.technician
+      .put(v1(`/check-standards/${s.checkStandardId}`))
+      .send({ name: 'Reference glass', acceptedValue: '300.5', ...now }),
+  'checkResults.add': (s) =>
+    s.technician
+      .post(v1(`/check-standards/${s.checkStandardId}/results`))
+      .send({ values: '300,2; 301', measuredAt: '2026-11-01T08:00:00Z' }),
+  'checkResults.withdraw': (s) =>
+    s.technician.post(v1(`/check-results/${s.checkResultId}/withdraw`)).send({ reason: 'The wrong cell' }),
+  'retests.ask': (s) =>
+    s.engineer.post(v1(`/samples/${s.sampleId}/retest`)).send({ reason: 'Far from the last results' }),
+  'retests.answer': (s) =>
+    s.technician
+      .post(v1(`/samples/${s.sampleId}/retest/answer`))
+      .send({ answer: 'no-bottle', then: 'hold', note: '' }),
+  'samples.release': (s) =>
+    s.engineer
+      .post(v1(`/samples/${s.sampleId}/release`))
+      .send({ reason: 'The next result agrees', version: 1 }),
+  'samples.correct': (s) =>
+    s.technician
+      .post(v1(`/samples/${s.sampleId}/correct`))
+      .send({ value: '302,5', reason: 'Typed wrongly', version: 1 }),
+  'samples.withdraw': (s, id) =>
+    s.technician.post(v1(`/samples/${id}/withdraw`)).send({ reason: 'The wrong bottle', version: 2 }),
   'sampleImports.upload': (s) =>
     s.technician
       .post(v1(`/sites/${s.siteId}/sample-imports`))
@@ -185,11 +220,47 @@ export const changes: Partial<Record<EndpointName, Send>> = {
     s.technician
       .put(v1(`/sample-imports/${id}/mapping`))
       .send({ mapping: { ...mapping, samplePointId: s.samplePointId, methodId: null }, version: 1 }),
+  'sampleImports.mend': (s, id) =>
+    s.technician
+      .put(v1(`/sample-imports/${id}/mends`))
+      .send({ mends: { 2: { value: '302,5' } }, version: 2 }),
   'sampleImports.commit': (s, found) => {
     const [id, outcome] = found.split(' ');
-    return s.technician.post(v1(`/sample-imports/${id}/commit`)).send({ version: 2, outcome });
+    return s.technician.post(v1(`/sample-imports/${id}/commit`)).send({ version: 3, outcome });
   },
   'sampleImports.undo': (s, id) => s.technician.post(v1(`/sample-imports/${id}/undo`)).send({}),
+  'importProfiles.change': (s) =>
+    s.technician
+      .put(v1(`/import-profiles/${s.importProfileId}`))
+      .send({ name: 'Furnace balance', archived: false, version: 1 }),
+  'sampling.enter': (s) =>
+    s.technician.post(v1(`/sites/${s.siteId}/samples`)).send({
+      entryKey: '0b6f0f0e-6f3c-4d53-9d0e-0c1f6a3f8a11',
+      samplePointId: s.samplePointId,
+      methodId: s.methodId,
+      sampleNumber: '',
+      takenAt: '2026-11-01T06:40:00.000Z',
+      value: '301,5',
+      unit: '°C',
+      note: 'By hand',
+    }),
+  'sampling.notTaken': (s) =>
+    s.technician.post(v1(`/sites/${s.siteId}/not-taken`)).send({
+      entryKey: '0b6f0f0e-6f3c-4d53-9d0e-0c1f6a3f8a12',
+      samplePointId: s.samplePointId,
+      askedFor: '2026-11-01T10:00:00.000Z',
+      reason: 'no-safe-access',
+      note: '',
+    }),
+  'sampling.ask': (s) =>
+    s.engineer.post(v1(`/soft-sensors/${s.softSensorId}/sample-requests`)).send({
+      count: 5,
+      fromAt: new Date().toISOString(),
+      untilAt: new Date(Date.now() + 3 * 86_400_000).toISOString(),
+      reason: 'Reads high',
+    }),
+  'sampling.withdraw': (s) =>
+    s.engineer.post(v1(`/sample-requests/${s.sampleRequestId}/withdraw`)).send({ version: 1 }),
   'history.upload': (s) =>
     s.engineer
       .post(v1(`/sites/${s.siteId}/history-imports`))
@@ -243,7 +314,12 @@ export const findings: Partial<Record<EndpointName, (scene: Scene) => Promise<st
     await addPairedSamples(s);
     return '';
   },
+  async 'samples.withdraw'(s) {
+    const { body } = await s.engineer.get(v1(`/samples/${s.sampleId}/history`));
+    return String(body.currentId);
+  },
   'sampleImports.dryRun': (s) => newest(s, 'sample-imports'),
+  'sampleImports.mend': (s) => newest(s, 'sample-imports'),
   async 'sampleImports.commit'(s) {
     const id = await newest(s, 'sample-imports');
     const { body } = await s.engineer.get(v1(`/sample-imports/${id}`));

@@ -59,7 +59,8 @@ export async function makeLaboratory(server: TestServer, name = 'Tarnby'): Promi
 /** The proposal of a file with what a person adds to it. */
 export function mappingOf(view: SampleImportView, said: Partial<ProposedMapping>): SampleMapping {
   const { proposed } = view.preview;
-  return { ...proposed, unit: proposed.unit ?? '°C', ...said } as SampleMapping;
+  const zone = proposed.zone ?? 'Europe/Copenhagen';
+  return { ...proposed, zone, unit: proposed.unit ?? '°C', ...said } as SampleMapping;
 }
 
 export const sayMapping = (agent: Agent, view: SampleImportView, mapping: object) =>

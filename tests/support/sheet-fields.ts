@@ -19,6 +19,7 @@ export function sheetFields(own: Partial<SheetFields> & Pick<SheetFields, 'unitI
     methodId: null,
     transportDelayMs: 0,
     pairingWindowMs: 0,
+    samplingPlan: null,
     steadyStateGate: false,
     promisedReferenceMs: 86_400_000,
     allowedErrorAbsolute: 1,

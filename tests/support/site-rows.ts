@@ -3,8 +3,11 @@ import type { Db } from '../../server/db/client.ts';
 import {
   areas,
   auditEntries,
+  checkResults,
+  checkStandards,
   drafts,
   historyImports,
+  importProfiles,
   lifeStates,
   methods,
   ownerships,
@@ -14,6 +17,7 @@ import {
   runs,
   sampleImports,
   samplePoints,
+  sampleRequests,
   samples,
   sites,
   softSensors,
@@ -25,6 +29,7 @@ import {
 import { addRecordRows } from './record-rows.ts';
 import { addFile } from './stored-file.ts';
 import type { Model } from '../../shared/contracts/models.ts';
+import type { ProfileMapping } from '../../shared/contracts/sample-profiles.ts';
 
 const at = new Date('2026-11-01T06:00:00Z');
 const hour = new Date('2026-11-01T07:00:00Z');
@@ -45,6 +50,11 @@ export type SiteRows = Record<
   | 'handoverId'
   | 'replayId'
   | 'sampleImportId'
+  | 'importProfileId'
+  | 'sampleId'
+  | 'sampleRequestId'
+  | 'checkStandardId'
+  | 'checkResultId'
   | 'historyImportId'
   | 'runId',
   number
@@ -121,19 +131,69 @@ async function addLaboratory(db: Db, mark: string, { siteId, unitId }: Plant, pe
       .values({ siteId, fileId, fileName: mark, sha256: mark, createdBy: personId, createdAt: at })
       .returning({ id: sampleImports.id }),
   );
-  await db.insert(samples).values({
-    siteId,
+  const importProfile = await only(
+    db
+      .insert(importProfiles)
+      .values({
+        siteId,
+        name: mark,
+        signature: mark,
+        mapping: {} as ProfileMapping,
+        usedAt: at,
+        createdBy: personId,
+        createdAt: at,
+      })
+      .returning({ id: importProfiles.id }),
+  );
+  const sample = await only(
+    db
+      .insert(samples)
+      .values({
+        siteId,
+        samplePointId: point.id,
+        sampleNumber: mark,
+        takenAt: at,
+        reportedAt: hour,
+        value: 301,
+        unit: '°C',
+        asWritten: '301',
+        enteredBy: personId,
+        enteredAt: hour,
+      })
+      .returning({ id: samples.id }),
+  );
+  return {
+    methodId: method.id,
     samplePointId: point.id,
-    sampleNumber: mark,
-    takenAt: at,
-    reportedAt: hour,
-    value: 301,
-    unit: '°C',
-    asWritten: '301',
-    enteredBy: personId,
-    enteredAt: hour,
-  });
-  return { methodId: method.id, samplePointId: point.id, sampleImportId: sampleImport.id };
+    sampleImportId: sampleImport.id,
+    importProfileId: importProfile.id,
+    sampleId: sample.id,
+    ...(await addChecks(db, mark, siteId, method.id, personId)),
+  };
+}
+
+async function addChecks(db: Db, mark: string, siteId: number, methodId: number, personId: number) {
+  const standard = await only(
+    db
+      .insert(checkStandards)
+      .values({ siteId, methodId, name: mark, acceptedValue: 300 })
+      .returning({ id: checkStandards.id }),
+  );
+  const result = await only(
+    db
+      .insert(checkResults)
+      .values({
+        siteId,
+        standardId: standard.id,
+        measuredAt: at,
+        analyst: mark,
+        values: [300, 301],
+        recordedBy: personId,
+        recordedAt: hour,
+      })
+      .returning({ id: checkResults.id }),
+  );
+  return { checkStandardId: standard.id, checkResultId: result.id };
 }
 type Laboratory = Awaited<ReturnType<typeof addLaboratory>>;
 
@@ -198,7 +258,28 @@ async function addSensor(db: Db, mark: string, rows: Plant & Laboratory, personI
       })
       .returning({ id: replays.id }),
   );
-  return { softSensorId: sensor.id, revisionId: revision.id, replayId: replay.id, runId: run.id };
+  const sampleRequest = await only(
+    db
+      .insert(sampleRequests)
+      .values({
+        ...key,
+        samplePointId: rows.samplePointId,
+        count: 3,
+        fromAt: at,
+        untilAt: new Date('2099-01-01T00:00:00Z'),
+        reason: mark,
+        askedBy: personId,
+        askedAt: at,
+      })
+      .returning({ id: sampleRequests.id }),
+  );
+  return {
+    softSensorId: sensor.id,
+    revisionId: revision.id,
+    replayId: replay.id,
+    runId: run.id,
+    sampleRequestId: sampleRequest.id,
+  };
 }
 
 function sheetOf(mark: string, rows: Plant & Laboratory, estimateTagId: number, personId: number) {

@@ -1,9 +1,17 @@
 import { trials as filterTrials } from './filter-figures.ts';
+import { killedCommitTrials } from './killed-commits.ts';
 import { trials as statisticsTrials } from './numerics-figures.ts';
+import { sampleFileTrials } from './mutated-samples.ts';
 import { reminderTrials } from './reminders.ts';
 
 /** Every figure that was simulated for this project, simulated again: `npm run trials`, or with a seed of one's own. */
-const trials = [...statisticsTrials, ...filterTrials, ...reminderTrials];
+const trials = [
+  ...statisticsTrials,
+  ...filterTrials,
+  ...killedCommitTrials,
+  ...reminderTrials,
+  ...sampleFileTrials,
+];
 const seed = Number(process.argv[2] ?? 20_261_201);
 console.log(`seed ${seed}`);
 let failed = 0;

@@ -14,7 +14,8 @@ import {
   uniqueIndex,
   uuid,
 } from 'drizzle-orm/pg-core';
-import type { ProfileMapping, SampleMends } from '../../../shared/contracts/sample-profiles.ts';
+import type { SampleMends } from '../../../shared/contracts/sample-mends.ts';
+import type { ProfileMapping } from '../../../shared/contracts/sample-profiles.ts';
 import type { SampleCounts, SampleMapping } from '../../../shared/contracts/samples.ts';
 import { bigIdentity, identity, instant } from './columns.ts';
 import { files } from './files.ts';

@@ -1,6 +1,7 @@
 import { sql } from 'drizzle-orm';
 import { foreignKey, integer, jsonb, pgTable, text, unique, uniqueIndex } from 'drizzle-orm/pg-core';
 import type { Shift } from '../../../shared/contracts/sampling.ts';
+import { usualShifts } from '../../../shared/contracts/sites.ts';
 import { identity, instant } from './columns.ts';
 
 export const sites = pgTable(
@@ -10,14 +11,7 @@ export const sites = pgTable(
     name: text('name').notNull(),
     zone: text('zone').notNull(),
     /** When shifts begin, by the clock of the site; each lasts until the next begins. */
-    shifts: jsonb('shifts')
-      .$type<Shift[]>()
-      .notNull()
-      .default([
-        { name: 'Early', from: '06:00' },
-        { name: 'Late', from: '14:00' },
-        { name: 'Night', from: '22:00' },
-      ]),
+    shifts: jsonb('shifts').$type<Shift[]>().notNull().default(usualShifts),
     archivedAt: instant('archived_at'),
     version: integer('version').notNull().default(1),
     createdAt: instant('created_at').notNull().defaultNow(),

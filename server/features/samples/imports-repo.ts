@@ -1,4 +1,5 @@
 import { and, desc, eq, ne } from 'drizzle-orm';
+import { completeMapping } from '../../../shared/rules/sample-mapping.ts';
 import type { Queryable } from '../../db/client.ts';
 import { persons, sampleImports } from '../../db/schema/index.ts';
 
@@ -7,7 +8,7 @@ export type ImportRow = typeof sampleImports.$inferSelect;
 const mostListed = 500;
 
 export async function listImports(db: Queryable, siteId: number, id?: number) {
-  return db
+  const rows = await db
     .select({
       id: sampleImports.id,
       siteId: sampleImports.siteId,
@@ -26,6 +27,7 @@ export async function listImports(db: Queryable, siteId: number, id?: number) {
     .where(and(eq(sampleImports.siteId, siteId), id === undefined ? undefined : eq(sampleImports.id, id)))
     .orderBy(desc(sampleImports.createdAt), desc(sampleImports.id))
     .limit(mostListed);
+  return rows.map((row) => ({ ...row, mapping: row.mapping && completeMapping(row.mapping) }));
 }
 
 export async function getImportView(db: Queryable, siteId: number, id: number) {

@@ -37,6 +37,7 @@ export async function listSamplePoints(db: Queryable, siteId: number, id?: numbe
       unitId: samplePoints.unitId,
       unitName: units.name,
       name: samplePoints.name,
+      aliases: samplePoints.aliases,
       archivedAt: samplePoints.archivedAt,
       version: samplePoints.version,
     })
@@ -56,6 +57,15 @@ export async function getSamplePoint(db: Queryable, siteId: number, id: number) 
   return row!;
 }
 
+/** A sample point in use; null for one that is archived or of another site. */
+export async function findPointInUse(db: Queryable, siteId: number, id: number) {
+  const [row] = await db
+    .select({ id: samplePoints.id, name: samplePoints.name })
+    .from(samplePoints)
+    .where(and(eq(samplePoints.siteId, siteId), eq(samplePoints.id, id), isNull(samplePoints.archivedAt)));
+  return row ?? null;
+}
+
 export async function listMethods(db: Queryable, siteId: number): Promise<MethodRow[]> {
   return db.select().from(methods).where(eq(methods.siteId, siteId)).orderBy(asc(methods.name));
 }
@@ -69,15 +79,35 @@ export async function findMethod(db: Queryable, siteId: number, id: number): Pro
   return row ?? null;
 }
 
-/** Does another row of the site bear the name? */
-export async function nameTaken(
+/** Does another method of the site bear the name? */
+export async function methodNameTaken(
   db: Queryable,
-  table: typeof samplePoints | typeof methods,
   siteId: number,
   name: string,
   exceptId: number | null,
 ): Promise<boolean> {
-  const same = sql`lower(${table.name}) = lower(${name})`;
-  const other = exceptId === null ? undefined : ne(table.id, exceptId);
-  return (await db.$count(table, and(eq(table.siteId, siteId), same, other))) > 0;
+  const same = sql`lower(${methods.name}) = lower(${name})`;
+  const other = exceptId === null ? undefined : ne(methods.id, exceptId);
+  return (await db.$count(methods, and(eq(methods.siteId, siteId), same, other))) > 0;
+}
+
+/** The other sample point of the site that goes by a name, as its own or as another one; null where none does. */
+export async function findPointCalled(
+  db: Queryable,
+  siteId: number,
+  name: string,
+  exceptId: number | null,
+): Promise<{ id: number; name: string } | null> {
+  const [row] = await db
+    .select({ id: samplePoints.id, name: samplePoints.name })
+    .from(samplePoints)
+    .where(
+      and(
+        eq(samplePoints.siteId, siteId),
+        exceptId === null ? undefined : ne(samplePoints.id, exceptId),
+        sql`lower(${name}) in (select lower(known) from unnest(${samplePoints.aliases} || ${samplePoints.name}) known)`,
+      ),
+    )
+    .limit(1);
+  return row ?? null;
 }

@@ -1,6 +1,7 @@
-import { eq } from 'drizzle-orm';
+import { eq, sql } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
 import type { LabMethod, SamplePoint } from '../../../shared/contracts/samples.ts';
+import { sayNarrow } from '../../../shared/rules/precision-sentences.ts';
 import type { Context } from '../../context.ts';
 import type { Tx } from '../../db/client.ts';
 import { methods, samplePoints } from '../../db/schema/index.ts';
@@ -11,7 +12,13 @@ import { toWire } from '../../http/wire.ts';
 import { lastSaveOf, recordAudit } from '../audit/service.ts';
 import { getUnit } from '../sites/repo.ts';
 import { archivedAt } from '../sites/service.ts';
-import { type MethodRow, type SamplePointRow, getSamplePoint, nameTaken } from './points-repo.ts';
+import {
+  type MethodRow,
+  type SamplePointRow,
+  findPointCalled,
+  getSamplePoint,
+  methodNameTaken,
+} from './points-repo.ts';
 
 interface By {
   actor: Actor;
@@ -21,7 +28,7 @@ interface Changed {
   archived: boolean;
   version: number;
 }
-type PointBody = Pick<SamplePoint, 'name' | 'unitId'>;
+type PointBody = Pick<SamplePoint, 'name' | 'unitId'> & { aliases?: string[] | undefined };
 type MethodBody = Pick<LabMethod, 'name' | 'quantity' | 'unit' | 'repeatability' | 'reproducibility'>;
 
 export async function addSamplePoint(
@@ -31,11 +38,11 @@ export async function addSamplePoint(
   body: PointBody,
 ): Promise<SamplePoint> {
   return context.db.transaction(async (tx) => {
-    await refuseName(tx, samplePoints, site.id, body.name, null);
+    await refusePointNames(tx, site.id, body, null);
     await refuseForeignUnit(tx, site.id, body.unitId);
     const [made] = await tx
       .insert(samplePoints)
-      .values({ siteId: site.id, ...body })
+      .values({ siteId: site.id, ...body, aliases: body.aliases ?? [] })
       .returning({ id: samplePoints.id });
     const after = await getSamplePoint(tx, site.id, made!.id);
     await note(context, tx, by, 'sample-point', 'add', null, after);
@@ -55,10 +62,11 @@ export async function changeSamplePoint(
     if (locked.version !== body.version) {
       throw stale('sample point', toWire(before), await lastSaveOf(tx, 'sample-point', row.id));
     }
-    await refuseName(tx, samplePoints, row.siteId, body.name, row.id);
+    const { archived, version, ...given } = body;
+    const values = { ...given, aliases: given.aliases ?? locked.aliases };
+    await refusePointNames(tx, row.siteId, values, row.id);
     await refuseForeignUnit(tx, row.siteId, body.unitId);
     if (body.archived && !locked.archivedAt) refuseInUse(before);
-    const { archived, version, ...values } = body;
     await tx
       .update(samplePoints)
       .set({ ...values, archivedAt: archivedAt(context, locked.archivedAt, archived), version: version + 1 })
@@ -86,7 +94,8 @@ export async function addMethod(
   body: MethodBody,
 ): Promise<LabMethod> {
   return context.db.transaction(async (tx) => {
-    await refuseName(tx, methods, site.id, body.name, null);
+    refuseNarrow(body);
+    await refuseMethodName(tx, site.id, body.name, null);
     const [after] = await tx
       .insert(methods)
       .values({ siteId: site.id, ...body })
@@ -107,7 +116,8 @@ export async function changeMethod(
     if (before.version !== body.version) {
       throw stale('method', toWire({ ...before }), await lastSaveOf(tx, 'method', row.id));
     }
-    await refuseName(tx, methods, row.siteId, body.name, row.id);
+    refuseNarrow(body);
+    await refuseMethodName(tx, row.siteId, body.name, row.id);
     const { archived, version, ...values } = body;
     const [after] = await tx
       .update(methods)
@@ -123,16 +133,41 @@ function refuseField(path: string, message: string): never {
   throw new AppError('invalid-input', message, { fields: [{ path, message }] });
 }
 
-async function refuseName(
+/** Names and other names of sample points are one list at a site: a file's name leads to one point only. */
+async function refusePointNames(
   tx: Tx,
-  table: typeof samplePoints | typeof methods,
+  siteId: number,
+  { name, aliases = [] }: PointBody,
+  exceptId: number | null,
+): Promise<void> {
+  await tx.execute(sql`select pg_advisory_xact_lock(hashtext('sample-points'), ${siteId}::int)`);
+  const seen = new Set<string>();
+  for (const [index, known] of [name, ...aliases].entries()) {
+    const path = index === 0 ? 'name' : 'aliases';
+    if (seen.has(known.toLowerCase())) refuseField(path, `${known} stands here twice. Write each name once.`);
+    seen.add(known.toLowerCase());
+    const other = await findPointCalled(tx, siteId, known, exceptId);
+    if (!other) continue;
+    if (other.name.toLowerCase() !== known.toLowerCase()) {
+      refuseField(path, `${other.name} goes by the name ${known} already. Take it from there first.`);
+    }
+    refuseField(path, `There is a sample point ${known} at this site already. Choose another name.`);
+  }
+}
+
+async function refuseMethodName(
+  tx: Tx,
   siteId: number,
   name: string,
   exceptId: number | null,
 ): Promise<void> {
-  if (!(await nameTaken(tx, table, siteId, name, exceptId))) return;
-  const what = table === samplePoints ? 'sample point' : 'method';
-  refuseField('name', `There is a ${what} ${name} at this site already. Choose another name.`);
+  if (!(await methodNameTaken(tx, siteId, name, exceptId))) return;
+  refuseField('name', `There is a method ${name} at this site already. Choose another name.`);
+}
+
+function refuseNarrow({ repeatability: r, reproducibility: R }: MethodBody): void {
+  if (r === null || R === null || r <= R) return;
+  refuseField('reproducibility', sayNarrow(r, R));
 }
 
 async function refuseForeignUnit(tx: Tx, siteId: number, unitId: number | null): Promise<void> {

@@ -1,24 +1,36 @@
 import { createHash } from 'node:crypto';
+import type { FileNotice } from '../../../shared/contracts/sample-evidence.ts';
 import type { SampleMapping } from '../../../shared/contracts/sample-import.ts';
 import { AppError, type FieldProblem } from '../../../shared/contracts/errors.ts';
+import { type FileRead, type Sheet, tableOf } from '../../../shared/rules/sample-file.ts';
+import { completeMapping } from '../../../shared/rules/sample-mapping.ts';
+import { findNotices } from '../../../shared/rules/sample-notices.ts';
 import { type DecidedRow, decideRows } from '../../../shared/rules/sample-outcomes.ts';
+import { holdsTimesOfDay, type RowRules } from '../../../shared/rules/sample-reading.ts';
 import type { SampleRegistry } from '../../../shared/rules/sample-registry.ts';
 import { createRowReader } from '../../../shared/rules/sample-row.ts';
 import { sayFileProblem } from '../../../shared/rules/sample-sentences.ts';
-import { type TableRow, readTable } from '../../../shared/rules/sample-table.ts';
-import { type Encoding, type FileProblem, decodeFile } from '../../../shared/rules/sample-text.ts';
+import type { TableRow } from '../../../shared/rules/sample-table.ts';
+import { type FileProblem, decodeFile } from '../../../shared/rules/sample-text.ts';
 import type { Queryable } from '../../db/client.ts';
 import { getSite } from '../sites/repo.ts';
 import { readWholeFile } from '../files/service.ts';
 import type { ImportRow } from './imports-repo.ts';
 import { findMethod, listMethods, listSamplePoints } from './points-repo.ts';
-import { findStored } from './repo.ts';
+import { recentValues } from './recent-values.ts';
+import { type AddedLine, findStored, linesAdded } from './repo.ts';
+import { isWorkbook, readWorkbook } from './workbook.ts';
+
+export { type FileRead, cutsOf } from '../../../shared/rules/sample-file.ts';
+export { recentValues } from './recent-values.ts';
 
 /** What becomes of each row of a file under a mapping. */
 export interface DryRun {
   header: string[];
   rows: DecidedRow[];
   registry: SampleRegistry;
+  /** What strikes in the file as a whole. */
+  notices: FileNotice[];
   /** Changes when the outcome of any row does. */
   outcome: string;
 }
@@ -30,11 +42,22 @@ export function unreadable(fileName: string, problem: FileProblem): AppError {
   });
 }
 
-/** The text of an import's file. */
-export async function readText(db: Queryable, row: ImportRow): Promise<{ text: string; encoding: Encoding }> {
-  const decoded = decodeFile(await readWholeFile(db, row));
-  if (!decoded.ok) throw unreadable(row.fileName, decoded.problem);
-  return decoded;
+/** The workbook last unpacked: that takes seconds, and one file is looked at several times in a row. */
+let lastWorkbook: { sha256: string; sheets: Sheet[] } | null = null;
+
+/** An import's file, as text or as the sheets of a workbook. */
+export async function readText(db: Queryable, row: ImportRow): Promise<FileRead> {
+  if (lastWorkbook?.sha256 === row.sha256) return { kind: 'workbook', sheets: lastWorkbook.sheets };
+  const bytes = await readWholeFile(db, row);
+  if (!isWorkbook(bytes)) {
+    const decoded = decodeFile(bytes);
+    if (!decoded.ok) throw unreadable(row.fileName, decoded.problem);
+    return { kind: 'text', text: decoded.text, encoding: decoded.encoding };
+  }
+  const read = await readWorkbook(bytes);
+  if (!read.ok) throw unreadable(row.fileName, read.problem);
+  lastWorkbook = { sha256: row.sha256, sheets: read.sheets };
+  return { kind: 'workbook', sheets: read.sheets };
 }
 
 /** Points and soft sensors of a site that a file may name; `everAt` includes points that were archived since. */
@@ -46,7 +69,7 @@ export async function loadRegistry(db: Queryable, siteId: number, everAt: boolea
   const named = (id: number | null) => (id !== null && inUse.has(id) ? id : null);
   return {
     zone: (await getSite(db, siteId)).zone,
-    pointsByName: new Map(points.map(({ id, name }) => [name.toLowerCase(), { id, name }])),
+    pointsByName: namesOf(points),
     sensorsAt: new Map(
       points.map(({ id, goesTo }) => [
         id,
@@ -54,6 +77,16 @@ export async function loadRegistry(db: Queryable, siteId: number, everAt: boolea
       ]),
     ),
   };
+}
+
+/** Points by every name they go by; where two share one, it is the one that bears it as its own. */
+function namesOf(points: readonly { id: number; name: string; aliases: string[] }[]) {
+  const names = new Map<string, { id: number; name: string }>();
+  for (const { id, name, aliases } of points) {
+    for (const alias of aliases) names.set(alias.trim().replace(/\s+/g, ' ').toLowerCase(), { id, name });
+  }
+  for (const { id, name } of points) names.set(name.replace(/\s+/g, ' ').toLowerCase(), { id, name });
+  return names;
 }
 
 /** Points and methods that a mapping names must be of the site and in use. */
@@ -83,13 +116,18 @@ function refuse(fields: FieldProblem[]): void {
   if (fields.length > 0) throw new AppError('invalid-input', fields[0]!.message, { fields });
 }
 
+interface Table {
+  header: string[];
+  rows: TableRow[];
+  /** Rows above the header. */
+  titleLines: number;
+}
+
 /** The header and the rows below it; a mapping that does not fit the file is refused field by field. */
-function tableUnder(
-  fileName: string,
-  text: string,
-  mapping: SampleMapping,
-): { header: string[]; rows: TableRow[] } {
-  const table = readTable(text, mapping.delimiter);
+function tableUnder(fileName: string, file: FileRead, mapping: SampleMapping): Table {
+  const table = tableOf(file, mapping);
+  if (!table.ok && table.problem.code === 'no-sheet')
+    refuse([{ path: 'mapping.sheet', message: sayFileProblem(table.problem) }]);
   if (!table.ok) throw unreadable(fileName, table.problem);
   const at = table.rows.findIndex(({ line }) => line === mapping.headerLine);
   const message = `No row begins on line ${mapping.headerLine}. Choose the line that names the columns.`;
@@ -98,7 +136,7 @@ function tableUnder(
   refuse(columnProblems(mapping, header.length));
   const rows = table.rows.slice(at + 1);
   if (rows.length === 0) throw unreadable(fileName, { code: 'no-rows' });
-  return { header, rows };
+  return { header, rows, titleLines: at };
 }
 
 function columnProblems(mapping: SampleMapping, width: number): FieldProblem[] {
@@ -120,32 +158,53 @@ function columnProblems(mapping: SampleMapping, width: number): FieldProblem[] {
 }
 
 /**
- * Reads the file under the mapping and decides each row. For an import that was committed it is decided as it was then:
- * at that moment and beside what stood then, its own samples aside.
+ * Reads the file under the mapping and decides each row. Of an import that was committed the rows that were added stay
+ * so, and the others are decided anew: a mend or a new name of a point may let them in. One that was undone is decided as
+ * it was then, at that moment and beside what stood then, its own samples aside.
  */
 export async function runDry(
   db: Queryable,
   row: ImportRow,
-  text: string,
-  mapping: SampleMapping,
+  file: FileRead,
+  said: SampleMapping,
   now: Date,
 ): Promise<DryRun> {
-  const { header, rows } = tableUnder(row.fileName, text, mapping);
-  const asOf = row.committedAt ? { importId: row.id, at: row.committedAt } : null;
+  const mapping = completeMapping(said);
+  const { header, rows, titleLines } = tableUnder(row.fileName, file, mapping);
+  const asOf = row.state === 'undone' ? { importId: row.id, at: row.committedAt! } : null;
   const registry = await loadRegistry(db, row.siteId, asOf !== null);
   const method = (await listMethods(db, row.siteId)).find(({ id }) => id === mapping.methodId);
-  const rules = {
+  const rules: RowRules = {
     mapping,
     registry,
     methodUnit: method?.unit ?? null,
     header,
     now: (asOf?.at ?? now).getTime(),
+    uploadedAt: row.createdAt.getTime(),
+    mends: row.mends,
+    wholeIsMidnight: holdsTimesOfDay(rows, mapping),
   };
   const read = rows.map(createRowReader(rules));
   const drafts = read.flatMap(({ sample }) => (sample ? [sample] : []));
-  const stored = await findStored(db, row.siteId, mapping.methodId, drafts, asOf);
-  const decided = decideRows(read, stored);
-  return { header, rows: decided, registry, outcome: fingerprint(decided) };
+  const { methodId } = mapping;
+  const stored = await findStored(db, row.siteId, methodId, drafts, asOf);
+  const pointIds = [...new Set(drafts.map(({ samplePointId }) => samplePointId))];
+  const lastValues = await recentValues(db, row.siteId, methodId, pointIds, asOf);
+  const { repeatability = null, reproducibility = null } = method ?? {};
+  const before = row.state === 'committed' ? await linesAdded(db, row) : new Map<number, AddedLine>();
+  const decided = decideRows(read, stored, { repeatability, reproducibility, lastValues }).map((one) =>
+    asAdded(one, before.get(one.row.line)),
+  );
+  const notices = findNotices(decided, { mapping, registry, titleLines, lastValues, reproducibility });
+  return { header, rows: decided, registry, notices, outcome: fingerprint(decided) };
+}
+
+/** A row whose sample stands already is no longer decided: its flags say how it went in. */
+function asAdded(decided: DecidedRow, before: AddedLine | undefined): DecidedRow {
+  if (!before) return decided;
+  const reasons = decided.reasons.filter(({ code }) => before.flags.includes(code));
+  const outcome = before.held ? 'held' : before.flags.length > 0 ? 'added-with-flag' : 'added';
+  return { ...decided, reasons, outcome, stored: true };
 }
 
 function fingerprint(rows: readonly DecidedRow[]): string {

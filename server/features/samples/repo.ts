@@ -1,5 +1,6 @@
-import { and, desc, eq, isNull, sql } from 'drizzle-orm';
-import type { SampleDraft } from '../../../shared/rules/sample-row.ts';
+import { and, desc, eq, isNotNull, isNull, sql } from 'drizzle-orm';
+import type { SampleReasonCode } from '../../../shared/contracts/sample-import.ts';
+import { isHold, type SampleDraft } from '../../../shared/rules/sample-row.ts';
 import { type StoredSample, sampleKey } from '../../../shared/rules/sample-outcomes.ts';
 import type { Queryable } from '../../db/client.ts';
 import { methods, samplePoints, samples } from '../../db/schema/index.ts';
@@ -8,6 +9,8 @@ import { type SensorAtPoint, sensorsByPoint } from './points-repo.ts';
 interface SampleFilter {
   page: number;
   perPage: number;
+  /** One sample, whether or not it still stands. */
+  id?: number | undefined;
   samplePointId?: number | undefined;
   importId?: number | undefined;
 }
@@ -16,8 +19,9 @@ interface SampleFilter {
 export async function listSamples(db: Queryable, siteId: number, filter: SampleFilter) {
   const where = and(
     eq(samples.siteId, siteId),
-    isNull(samples.supersededAt),
-    isNull(samples.withdrawnAt),
+    filter.id === undefined
+      ? and(isNull(samples.supersededAt), isNull(samples.withdrawnAt))
+      : eq(samples.id, filter.id),
     filter.samplePointId === undefined ? undefined : eq(samples.samplePointId, filter.samplePointId),
     filter.importId === undefined ? undefined : eq(samples.importId, filter.importId),
   );
@@ -42,6 +46,7 @@ export async function listSamples(db: Queryable, siteId: number, filter: SampleF
       ...sample,
       samplePoint,
       method,
+      changed: sample.version > 1,
       goesTo: sensorsFor(sensors, sample.samplePointId, sample.methodId),
     })),
     total: await db.$count(samples, where),
@@ -49,7 +54,11 @@ export async function listSamples(db: Queryable, siteId: number, filter: SampleF
 }
 
 /** A sample judges the soft sensors at its point that ask for its method, or where either names none. */
-function sensorsFor(sensors: Map<number, SensorAtPoint[]>, samplePointId: number, methodId: number | null) {
+export function sensorsFor(
+  sensors: Map<number, SensorAtPoint[]>,
+  samplePointId: number,
+  methodId: number | null,
+) {
   return (sensors.get(samplePointId) ?? [])
     .filter((sensor) => sensor.methodId === null || methodId === null || sensor.methodId === methodId)
     .map(({ softSensorId, tagName }) => ({ softSensorId, tagName }));
@@ -91,13 +100,36 @@ export async function findStored(
   return new Map(found.rows.map((row) => [sampleKey(row), row]));
 }
 
+/** How a row of a file went in. */
+export interface AddedLine {
+  flags: string[];
+  held: boolean;
+}
+
+/** The rows of a committed file that were added, by line; what a correction took the place of counts too. */
+export async function linesAdded(
+  db: Queryable,
+  { siteId, id }: { siteId: number; id: number },
+): Promise<Map<number, AddedLine>> {
+  const rows = await db
+    .select({ line: samples.line, flags: samples.flags })
+    .from(samples)
+    .where(and(eq(samples.siteId, siteId), eq(samples.importId, id), isNotNull(samples.line)));
+  return new Map(
+    rows.map(({ line, flags }) => [
+      line!,
+      { flags, held: flags.some((code) => isHold(code as SampleReasonCode)) },
+    ]),
+  );
+}
+
 export interface NewSamples {
   siteId: number;
   methodId: number | null;
   importId: number;
   enteredBy: number;
   enteredAt: Date;
-  rows: { sample: SampleDraft; line: number; flags: string[] }[];
+  rows: { sample: SampleDraft; line: number; held: boolean; flags: string[] }[];
 }
 
 /** Adds samples by arrays: a hundred thousand rows are far more than bind parameters allow. */
@@ -109,9 +141,12 @@ export async function addSamples(tx: Queryable, added: NewSamples): Promise<void
   const instant = (ms: number | null) => (ms === null ? null : new Date(ms).toISOString());
   await tx.execute(sql`
     insert into samples (site_id, sample_point_id, method_id, sample_number, taken_at, taken_on, reported_at, value,
-      qualifier, unit, as_written, flags, import_id, line, entered_by, entered_at)
+      qualifier, unit, as_written, flags, held_since, stated_unit, stated_value, replicates, composite_ms, analyst,
+      import_id, line, entered_by, entered_at)
     select ${siteId}::int, n.point, ${methodId}::int, n.number, n.taken_at, n.taken_on, n.reported_at, n.value,
-      n.qualifier, n.unit, n.written, string_to_array(n.flags, ' '), ${importId}::int, n.line, ${enteredBy}::int,
+      n.qualifier, n.unit, n.written, string_to_array(n.flags, ' '),
+      case when n.held then ${at}::timestamptz end, n.stated_unit, n.stated_value,
+      string_to_array(n.replicates, ' ')::float8[], n.composite_ms, n.analyst, ${importId}::int, n.line, ${enteredBy}::int,
       ${at}::timestamptz
     from unnest(
       ${column('int', ({ sample }) => sample.samplePointId)}, ${column('text', ({ sample }) => sample.sampleNumber)},
@@ -119,8 +154,13 @@ export async function addSamples(tx: Queryable, added: NewSamples): Promise<void
       ${column('timestamptz', ({ sample }) => instant(sample.reportedAt))}, ${column('float8', ({ sample }) => sample.value)},
       ${column('text', ({ sample }) => sample.qualifier)}, ${column('text', ({ sample }) => sample.unit)},
       ${column('text', ({ sample }) => sample.asWritten)}, ${column('text', ({ flags }) => flags.join(' '))},
+      ${column('bool', ({ held }) => held)}, ${column('text', ({ sample }) => sample.statedUnit)},
+      ${column('float8', ({ sample }) => sample.statedValue)},
+      ${column('text', ({ sample }) => sample.replicates?.join(' ') ?? null)},
+      ${column('int', ({ sample }) => sample.compositeMs)}, ${column('text', ({ sample }) => sample.analyst || null)},
       ${column('int', ({ line }) => line)}
-    ) as n(point, number, taken_at, taken_on, reported_at, value, qualifier, unit, written, flags, line)`);
+    ) as n(point, number, taken_at, taken_on, reported_at, value, qualifier, unit, written, flags, held, stated_unit, stated_value, replicates,
+      composite_ms, analyst, line)`);
 }
 
 /** Takes the samples of an import out again; returns the points they were at. */

@@ -3,10 +3,13 @@ import type { Context } from '../../context.ts';
 import { routesOf } from '../../http/front-door.ts';
 import { toWire } from '../../http/wire.ts';
 import { commitImport, undoImport } from './commit.ts';
-import { addUpload, refusedRows, sayMapping, viewImport } from './imports.ts';
+import { addUpload, mendRows, refusedRows, sayMapping } from './imports.ts';
+import { viewImport } from './import-view.ts';
 import { listImports } from './imports-repo.ts';
 import { addMethod, addSamplePoint, changeMethod, changeSamplePoint } from './points.ts';
 import { listMethods, listSamplePoints } from './points-repo.ts';
+import { changeProfile } from './profiles.ts';
+import { listProfiles } from './profiles-repo.ts';
 import { listSamples } from './repo.ts';
 
 export const sampleRoutes = (context: Context) =>
@@ -26,6 +29,10 @@ export const sampleRoutes = (context: Context) =>
     'sampleImports.get': ({ row }) => viewImport(context.db, row, context.clock()),
     'sampleImports.dryRun': ({ actor, origin, row, body }) =>
       sayMapping(context, { actor, origin }, row, body),
+    'sampleImports.mend': ({ actor, origin, row, body }) => mendRows(context, { actor, origin }, row, body),
+    'importProfiles.list': async ({ row }) => ({ rows: toWire(await listProfiles(context.db, row.id)) }),
+    'importProfiles.change': ({ actor, origin, row, body }) =>
+      changeProfile(context, { actor, origin }, row, body),
     'sampleImports.commit': ({ actor, origin, row, body }) =>
       commitImport(context, { actor, origin }, row, body),
     'sampleImports.undo': ({ actor, origin, row }) => undoImport(context, { actor, origin }, row),

@@ -27,6 +27,12 @@ describe('decoding', () => {
     expect(decodeFile(latin)).toEqual({ ok: true, text, encoding: 'windows-1252' });
   });
 
+  it('takes the signs that windows-1252 alone has', () => {
+    // Source: WHATWG Encoding Standard, index windows-1252.
+    const read = decodeFile(bytes(0x50, 0x80, 0x89, 0x91, 0x96, 0xb0, 0x43));
+    expect(read).toEqual({ ok: true, text: 'P€‰‘–°C', encoding: 'windows-1252' });
+  });
+
   it.each([
     ['nothing', bytes(), 'empty'],
     ['blanks', utf8(' \n\t\n'), 'empty'],

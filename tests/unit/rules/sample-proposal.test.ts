@@ -1,6 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import { proposeMapping } from '../../../shared/rules/sample-proposal.ts';
 import { type SampleRegistry, unitKey } from '../../../shared/rules/sample-registry.ts';
+import { noColumns } from '../../../shared/rules/sample-mapping.ts';
+import { textFile } from '../../support/read-samples.ts';
 import { sayCounts, sayFileProblem, sayReading } from '../../../shared/rules/sample-sentences.ts';
 
 const registry: SampleRegistry = {
@@ -15,7 +17,7 @@ const registry: SampleRegistry = {
   ]),
 };
 const proposed = (text: string, known = registry) => {
-  const proposal = proposeMapping(text, known);
+  const proposal = proposeMapping(textFile(text), known);
   if (!proposal.ok) throw new Error(sayFileProblem(proposal.problem));
   return proposal.proposed;
 };
@@ -25,14 +27,7 @@ const columnsOf = (...header: string[]) => {
     Object.entries(columns).map(([role, column]) => [role, column === null ? null : header[column]]),
   );
 };
-const none = {
-  sampleNumber: null,
-  takenAt: null,
-  reportedAt: null,
-  value: null,
-  unit: null,
-  samplePoint: null,
-};
+const none = noColumns;
 
 describe('the words of a header', () => {
   // Spellings of public regulator templates and plant exports; common practice, no single source.
