@@ -14,11 +14,13 @@ import { calibrationRoutes } from './features/calibrations/routes.ts';
 import { eventRoutes } from './features/events/routes.ts';
 import { judgingRoutes } from './features/judging/routes.ts';
 import { historyRoutes } from './features/history/routes.ts';
+import { laboratoryRoutes } from './features/laboratory/routes.ts';
 import { mailRoutes } from './features/mail/routes.ts';
 import { peopleRoutes } from './features/people/routes.ts';
 import { registerRoutes } from './features/register/routes.ts';
 import { runRoutes } from './features/runs/routes.ts';
 import { sampleRoutes } from './features/samples/routes.ts';
+import { samplingRoutes } from './features/sampling/routes.ts';
 import { siteRoutes } from './features/sites/routes.ts';
 import { tagRoutes } from './features/tags/routes.ts';
 import { openApiDocument } from './http/openapi.ts';
@@ -74,6 +76,8 @@ const features = [
   tagRoutes,
   historyRoutes,
   sampleRoutes,
+  samplingRoutes,
+  laboratoryRoutes,
   runRoutes,
   registerRoutes,
   judgingRoutes,

@@ -2,6 +2,7 @@ import { eq } from 'drizzle-orm';
 import type { Interval } from '../../shared/contracts/interval.ts';
 import type { Model } from '../../shared/contracts/models.ts';
 import type { SheetFields } from '../../shared/contracts/register.ts';
+import { defaultSamplingPlan } from '../../shared/rules/sampling-plan.ts';
 import type { Context } from '../../server/context.ts';
 import { revisions } from '../../server/db/schema/index.ts';
 import { type SensorRow, findDraft, findSensor } from '../../server/features/estimates/repo.ts';
@@ -55,6 +56,7 @@ export async function register(
   const fields: SheetFields = {
     ...usual,
     ...intervals[demo.sheet.importanceClass],
+    samplingPlan: defaultSamplingPlan(demo.sheet.importanceClass),
     ...demo.sheet,
     ...laboratory,
     ...(demo.recalibration ? { recalibrationInterval: demo.recalibration } : {}),

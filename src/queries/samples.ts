@@ -49,6 +49,8 @@ export function useSampleImport(id: MaybeRefOrGetter<number>) {
   return useQuery({
     queryKey: ['sample-import', id],
     queryFn: () => call('sampleImports.get', { params: { sampleImportId: String(toValue(id)) } }),
+    // Judging takes some seconds after a file was added; the receipt then says what came of it.
+    refetchInterval: ({ state }) => (state.data?.receipt?.waiting ? 2000 : false),
   });
 }
 
@@ -70,7 +72,7 @@ export function useUploadSamples() {
 }
 
 /** Takes a view that an answer brought, also the one that came with a 409. */
-function useTakeView() {
+export function useTakeView() {
   const client = useQueryClient();
   return async (view: SampleImportView) => {
     client.setQueryData(['sample-import', view.import.id], view);
@@ -85,7 +87,7 @@ export function currentView(error: unknown): SampleImportView | null {
   return current && 'preview' in current ? (current as unknown as SampleImportView) : null;
 }
 
-function useTakeStale() {
+export function useTakeStale() {
   const take = useTakeView();
   return (error: unknown) => {
     const current = currentView(error);

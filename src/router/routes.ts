@@ -66,10 +66,22 @@ export const routes: RouteRecordRaw[] = [
         meta: { title: 'Samples' },
       },
       {
+        path: 'samples/:id(\\d+)',
+        name: 'sample',
+        component: () => import('../pages/samples/SamplePage.vue'),
+        meta: { title: 'Sample' },
+      },
+      {
         path: 'samples/imports/:id(\\d+)',
         name: 'sample-import',
         component: () => import('../pages/samples/SampleImportPage.vue'),
         meta: { title: 'Add samples' },
+      },
+      {
+        path: 'samples/asked',
+        name: 'asked',
+        component: () => import('../pages/samples/AskedPage.vue'),
+        meta: { title: 'Samples asked for' },
       },
       {
         path: 'samples/points',

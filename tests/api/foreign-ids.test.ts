@@ -3,6 +3,7 @@ import { persons } from '../../server/db/schema/index.ts';
 import { sheetFields } from '../support/sheet-fields.ts';
 import { addSiteRows, type SiteRows } from '../support/site-rows.ts';
 import { type Agent, useServer } from '../support/server.ts';
+import { noColumns } from '../../shared/rules/sample-mapping.ts';
 
 const server = useServer();
 let own: SiteRows;
@@ -43,8 +44,15 @@ const mapping = {
   dateOrder: 'iso',
   zone: 'UTC',
   unit: '°C',
-  columns: { sampleNumber: null, takenAt: 0, reportedAt: null, value: 1, unit: null, samplePoint: null },
+  columns: { ...noColumns, takenAt: 0, value: 1 },
+  sheet: null,
+  missingWords: [],
 };
+
+const entryKey = '0b6f0f0e-6f3c-4d53-9d0e-0c1f6a3f8a11';
+const takenAt = '2026-11-01T06:00:00Z';
+const entry = { entryKey, sampleNumber: '', takenAt, value: '301', unit: '°C', note: '' };
+const missed = { entryKey, askedFor: takenAt, reason: 'bottle-lost', note: '' };
 
 type Try = [method: 'post' | 'put', path: string, body: object, field: string];
 
@@ -83,6 +91,15 @@ function tries(): Try[] {
       const body = { kind: 'stop', at: '2026-11-01T06:00:00Z', [field]: foreign[field] };
       return ['post', `${site}/events`, body, field];
     }),
+    ...(['samplePointId', 'methodId'] as const).map((field): Try => {
+      const body = { [field]: foreign[field], reason: 'Moved', version: 1 };
+      return ['post', `/samples/${own.sampleId}/correct`, body, field];
+    }),
+    ...(['samplePointId', 'methodId'] as const).map((field): Try => {
+      const body = { ...entry, samplePointId: own.samplePointId, methodId: null, [field]: foreign[field] };
+      return ['post', `${site}/samples`, body, field];
+    }),
+    ['post', `${site}/not-taken`, { ...missed, samplePointId: foreign.samplePointId }, 'samplePointId'],
     ['put', `${sensor}/draft`, { model, version: 1 }, 'tagId'],
     [
       'post',

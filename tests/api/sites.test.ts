@@ -66,6 +66,43 @@ describe('a site', () => {
   });
 });
 
+describe('the shifts of a site', () => {
+  const usual = [
+    { name: 'Early', from: '06:00' },
+    { name: 'Late', from: '14:00' },
+    { name: 'Night', from: '22:00' },
+  ];
+  const own = async (name: string) => add<Site>(administrator, '/sites', { name, zone: 'UTC' });
+  const shift = (from: string, name: string) => ({ name, from });
+
+  it('are three of eight hours until somebody says otherwise, and kept in order of time', async () => {
+    const mill = await own('Shift Mill');
+    expect(mill.shifts).toEqual(usual);
+    const shifts = [shift('19:00', ' Night '), shift('07:00', 'Day')];
+    const changed = await change(administrator, `/sites/${mill.id}`, mill, { shifts }).expect(200);
+    expect(changed.body.shifts).toEqual([shift('07:00', 'Day'), shift('19:00', 'Night')]);
+    const { shifts: _shifts, ...without } = changed.body;
+    const renamed = await change(administrator, `/sites/${mill.id}`, without, { name: 'Shift Mill 2' });
+    expect(renamed.body.shifts).toEqual(changed.body.shifts);
+    const { body } = await administrator.get('/api/v1/audit').query({ siteId: mill.id }).expect(200);
+    const saved = body.rows.find(({ before }: { before: Site | null }) => before?.version === 1);
+    expect([saved.before.shifts, saved.after.shifts]).toEqual([usual, changed.body.shifts]);
+  });
+
+  it.each([
+    [[], 'shifts', 'one shift at least'],
+    [Array.from({ length: 7 }, (_, n) => shift(`0${n}:00`, `S${n}`)), 'shifts', '6 shifts at most'],
+    [[shift('06:00', 'Day'), shift('18:00', 'day')], 'shifts.1.name', 'called day already'],
+    [[shift('06:00', 'Day'), shift('06:00', 'Night')], 'shifts.1.from', 'begins at 06:00 already'],
+    [[shift('6:00', 'Day')], 'shifts.0.from', 'A time looks like 06:00.'],
+    [[shift('24:00', 'Day')], 'shifts.0.from', 'A time looks like 06:00.'],
+    [[shift('06:00', '  ')], 'shifts.0.name', 'Name the shift.'],
+  ])('are refused beside what is wrong: %j', async (shifts, path, message) => {
+    const answer = await change(administrator, `/sites/${site.id}`, site, { shifts }).expect(400);
+    expect(answer.body.fields).toEqual([{ path, message: expect.stringContaining(message) }]);
+  });
+});
+
 describe('areas and units', () => {
   it('are added, renamed and moved by an engineer of the site', async () => {
     const hot = await add<Area>(engineer, `/sites/${site.id}/areas`, { name: 'Hot end' });

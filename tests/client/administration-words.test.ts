@@ -115,6 +115,13 @@ describe('an entry of the audit trail', () => {
       { action: 'commit', entity: 'sample-import', entityName: 'wk48.csv' },
       'committed the sample file wk48.csv',
     ],
+    [{ action: 'remove', entity: 'sample', entityName: 'KX-1' }, 'withdrew the sample KX-1'],
+    [{ action: 'decide', entity: 'sample', entityName: 'KX-1' }, 'released the sample KX-1'],
+    [{ action: 'add', entity: 're-test', entityName: 'KX-1' }, 'asked for the re-test of KX-1'],
+    [
+      { action: 'remove', entity: 'check-result', entityName: 'Gold point' },
+      'withdrew the results on Gold point',
+    ],
     [{ action: 'weigh', entity: 'new-thing', entityName: 'X' }, 'weigh the new thing X'],
   ])('%j: %s', (own, words) => {
     expect(deedWords(entry(own))).toBe(words);

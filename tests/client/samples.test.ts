@@ -18,6 +18,7 @@ import {
   sayRowTaken,
   sayRowValue,
   saySamples,
+  sayStated,
   sayValue,
 } from '../../src/components/samples/sample-words.ts';
 import { mountPart } from './mount-part.ts';
@@ -79,7 +80,7 @@ describe('what each column of a file of samples holds', () => {
   });
 
   test('is open again where another delimiter leaves no such column', () => {
-    const next = withReading(proposed, { delimiter: ',' }, head);
+    const next = withReading(proposed, { delimiter: ',' }, { ...exampleView.preview, head });
     expect(next.columns.samplePoint).toBeNull();
     expect(next.columns.sampleNumber).toBe(0);
   });
@@ -106,15 +107,31 @@ describe('words about samples', () => {
   });
 
   test('give a result as it was written, its limit sign once, a true minus', () => {
-    expect(sayValue({ asWritten: '<1200', qualifier: '<', unit: '°C' })).toBe('<\u00a01200\u00a0°C');
-    expect(sayValue({ asWritten: '-1.5', qualifier: null, unit: '' })).toBe('−1.5');
+    const plain = { value: 1200, qualifier: null, unit: '°C', statedUnit: null, replicates: null };
+    expect(sayValue({ ...plain, asWritten: '<1200', qualifier: '<' })).toBe('<\u00a01200\u00a0°C');
+    expect(sayValue({ ...plain, asWritten: '-1.5', unit: '' })).toBe('−1.5');
+  });
+
+  test('give a converted result or the mean of repeats as it stands, not as a cell has it', () => {
+    const plain = { value: 1482.2222222, asWritten: '2700', qualifier: null, unit: '°C' };
+    const converted = { ...plain, statedUnit: '°F', statedValue: 2700, replicates: null };
+    expect(sayValue(converted)).toBe('1482.22\u00a0°C');
+    expect(sayStated(converted)).toBe('written as 2700\u00a0°F');
+    expect(sayValue({ ...plain, value: 5.45, statedUnit: null, replicates: [5.4, 5.5] })).toBe(
+      '5.45\u00a0°C',
+    );
+    expect(sayStated({ statedUnit: null, statedValue: null })).toBe('');
   });
 
   test('say a flag for people', () => {
-    expect(sayFlags(['censored', 'date-only'])).toBe(
+    const plain = { flags: [], heldSince: null, changed: false };
+    expect(sayFlags({ ...plain, flags: ['censored', 'date-only'] })).toBe(
       'outside the method’s range, not used to judge; no time of day, never compared',
     );
-    expect(sayFlags([])).toBe('');
+    expect(sayFlags({ flags: ['far-from-last'], heldSince: '2026-11-29T15:00:00Z', changed: true })).toBe(
+      'held; far from the last results; corrected',
+    );
+    expect(sayFlags(plain)).toBe('');
   });
 
   test('say what became of a file, before and after it is added and taken out again', () => {
@@ -163,13 +180,26 @@ describe('the rows of a dry run', () => {
     samplePoint: 'KX-09',
     goesTo: ['TY-1402'],
     reasons,
+    stored: false,
+    inFile: {},
   });
   const refused = row(9, 'refused', [{ code: 'no-value', figures: { written: '' } }]);
   const added = Array.from({ length: 8 }, (_none, index) => row(index + 10, 'added'));
 
   test('stand refused first, with the reason, and the many added on asking', async () => {
     const wrapper = mountPart(OutcomeRows, {
-      props: { rows: [...added, refused], counts, site: { zone, name: 'Tarnby Works' }, zone },
+      props: {
+        rows: [...added, refused],
+        counts,
+        site: { zone, name: 'Tarnby Works' },
+        zone,
+        mends: {},
+        points: [],
+        added: false,
+        mayMend: false,
+        mayName: false,
+        busy: false,
+      },
     });
     const lines = () => wrapper.findAll('tbody tr').map((line) => line.find('td').text());
     expect(lines()).toEqual(['9', '10', '11', '12', '13', '14']);

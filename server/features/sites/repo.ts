@@ -10,6 +10,7 @@ const siteColumns = {
   id: sites.id,
   name: sites.name,
   zone: sites.zone,
+  shifts: sites.shifts,
   archivedAt: sites.archivedAt,
   version: sites.version,
 };

@@ -1,5 +1,6 @@
 import { and, eq, isNull } from 'drizzle-orm';
 import { AppError } from '../../../shared/contracts/errors.ts';
+import type { Shift } from '../../../shared/contracts/sampling.ts';
 import type { Area, Site, Unit } from '../../../shared/contracts/sites.ts';
 import { plural } from '../../../shared/rules/format.ts';
 import type { Context } from '../../context.ts';
@@ -25,9 +26,18 @@ interface Changed {
 export const archivedAt = (context: Context, before: Date | null, archived: boolean): Date | null =>
   archived ? (before ?? context.clock()) : null;
 
-export async function addSite(context: Context, by: By, body: { name: string; zone: string }): Promise<Site> {
+interface SiteBody {
+  name: string;
+  zone: string;
+  shifts?: Shift[] | undefined;
+}
+
+export async function addSite(context: Context, by: By, { shifts, ...body }: SiteBody): Promise<Site> {
   return context.db.transaction(async (tx) => {
-    const [made] = await tx.insert(sites).values(body).returning({ id: sites.id });
+    const [made] = await tx
+      .insert(sites)
+      .values({ ...body, ...(shifts && { shifts }) })
+      .returning({ id: sites.id });
     const after = await getSite(tx, made!.id);
     await note(context, tx, by, 'site', after.id, 'add', null, after);
     return toWire(after);
@@ -38,7 +48,7 @@ export async function changeSite(
   context: Context,
   by: By,
   row: Permitted<SiteRow>,
-  body: { name: string; zone: string } & Changed,
+  body: SiteBody & Changed,
 ): Promise<Site> {
   return context.db.transaction(async (tx) => {
     const locked = await lockRow(tx, 'site', row);
@@ -50,6 +60,7 @@ export async function changeSite(
       .set({
         name: body.name,
         zone: body.zone,
+        shifts: body.shifts ?? locked.shifts,
         archivedAt: archivedAt(context, locked.archivedAt, body.archived),
         version: locked.version + 1,
       })

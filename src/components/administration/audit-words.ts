@@ -18,7 +18,20 @@ const things: Record<string, string> = {
   softSensor: 'soft sensor',
   'sample-point': 'sample point',
   'sample-import': 'sample file',
+  'import-profile': 'kind of sample file',
   'history-import': 'history file',
+  're-test': 're-test of',
+  'check-result': 'results on',
+  'sample-request': 'request for samples of',
+  'sample-not-taken': 'reason for no sample at',
+};
+/** Verbs of what a thing has of its own. */
+const ownVerbs: Record<string, Record<string, string>> = {
+  sample: { decide: 'released', remove: 'withdrew' },
+  're-test': { add: 'asked for', decide: 'answered' },
+  'check-result': { remove: 'withdrew' },
+  'sample-request': { add: 'made', cancel: 'withdrew' },
+  'sample-not-taken': { add: 'gave' },
 };
 const thingWord = (entity: string): string => things[entity] ?? entity.replaceAll('-', ' ');
 
@@ -37,7 +50,7 @@ export function deedWords(entry: AuditEntry): string {
   }
   if (entity === 'password link') return `mailed a password link to ${entityName}`;
   if (entity === 'readings') return `removed readings of ${entityName}`;
-  const verb = archiveVerb(before, after) ?? verbs[action] ?? action;
+  const verb = archiveVerb(before, after) ?? ownVerbs[entity]?.[action] ?? verbs[action] ?? action;
   // A part of a soft sensor is recorded under the sensor: "AY-3310, draft".
   const part = entity === 'softSensor' ? /^(.+), ([a-z ]+)$/.exec(entityName) : null;
   return part ? `${verb} the ${part[2]} of ${part[1]}` : `${verb} the ${thingWord(entity)} ${entityName}`;

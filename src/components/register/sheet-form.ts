@@ -1,6 +1,7 @@
 import type { z } from 'zod';
 import type { Interval } from '../../../shared/contracts/interval.ts';
 import { sheetBody, type Consumer, type SheetFields } from '../../../shared/contracts/register.ts';
+import { defaultSamplingPlan } from '../../../shared/rules/sampling-plan.ts';
 import { readDuration, splitDuration, type DurationText } from './durations.ts';
 import { readInterval, splitInterval, type IntervalText } from './intervals.ts';
 import { numberText, readNumber } from './number-text.ts';
@@ -41,10 +42,28 @@ const day = 24 * hour;
 const months = (every: number): Interval => ({ every, unit: 'months', counted: 'last-done', anchorOn: null });
 
 /** What usually holds for a class (common practice, no source); a person may change each. */
-const classDefaults: Record<ImportanceClass, Pick<SheetFields, 'promisedReferenceMs' | IntervalField>> = {
-  A: { promisedReferenceMs: 2 * day, recalibrationInterval: months(3), reviewInterval: months(12) },
-  B: { promisedReferenceMs: 7 * day, recalibrationInterval: months(6), reviewInterval: months(12) },
-  C: { promisedReferenceMs: 28 * day, recalibrationInterval: months(12), reviewInterval: months(24) },
+const classDefaults: Record<
+  ImportanceClass,
+  Pick<SheetFields, 'promisedReferenceMs' | 'samplingPlan' | IntervalField>
+> = {
+  A: {
+    promisedReferenceMs: 2 * day,
+    samplingPlan: defaultSamplingPlan('A'),
+    recalibrationInterval: months(3),
+    reviewInterval: months(12),
+  },
+  B: {
+    promisedReferenceMs: 7 * day,
+    samplingPlan: defaultSamplingPlan('B'),
+    recalibrationInterval: months(6),
+    reviewInterval: months(12),
+  },
+  C: {
+    promisedReferenceMs: 28 * day,
+    samplingPlan: defaultSamplingPlan('C'),
+    recalibrationInterval: months(12),
+    reviewInterval: months(24),
+  },
 };
 
 export function blankForm(): SheetForm {
@@ -104,9 +123,11 @@ export function withClass(form: SheetForm, importanceClass: ImportanceClass): Sh
       : form[field];
   const promised = readDuration(form.promisedReferenceMs);
   const untouched = 'ms' in promised && promised.ms === before.promisedReferenceMs;
+  const samePlan = JSON.stringify(form.samplingPlan) === JSON.stringify(before.samplingPlan);
   return {
     ...form,
     importanceClass,
+    samplingPlan: samePlan ? after.samplingPlan : form.samplingPlan,
     recalibrationInterval: interval('recalibrationInterval'),
     reviewInterval: interval('reviewInterval'),
     promisedReferenceMs: untouched ? splitDuration(after.promisedReferenceMs) : form.promisedReferenceMs,

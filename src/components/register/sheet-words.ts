@@ -21,6 +21,7 @@ export const fieldLabels: Record<keyof SheetFields, string> = {
   pairingWindowMs: 'Averaging window',
   steadyStateGate: 'Only steady samples count',
   promisedReferenceMs: 'A reference at least every',
+  samplingPlan: 'Samples asked for',
   allowedErrorAbsolute: 'Allowed error, absolute',
   allowedErrorPercent: 'Allowed error, % of value',
   allowedSpread: 'Allowed spread',
@@ -121,6 +122,8 @@ export function sayField(field: keyof SheetFields, fields: SheetFields, nameOf: 
     case 'promisedReferenceMs':
     case 'historyEveryMs':
       return sayDuration(Number(value));
+    case 'samplingPlan':
+      return planWords(fields.samplingPlan);
     case 'recalibrationInterval':
     case 'reviewInterval':
       return intervalWords(fields[field]);
@@ -135,3 +138,7 @@ export function sayField(field: keyof SheetFields, fields: SheetFields, nameOf: 
       return String(value);
   }
 }
+
+/** "2 a shift"; "not by plan" without one. */
+export const planWords = (plan: SheetFields['samplingPlan']): string =>
+  plan ? `${plan.count} a ${plan.per}` : 'not by plan';

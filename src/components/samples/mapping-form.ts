@@ -1,4 +1,8 @@
-import type { ProposedMapping, SampleMapping } from '../../../shared/contracts/sample-import.ts';
+import type {
+  ProposedMapping,
+  SampleImportView,
+  SampleMapping,
+} from '../../../shared/contracts/sample-import.ts';
 import { readTable } from '../../../shared/rules/sample-table.ts';
 
 /** How a file is to be read, as far as it has been said; null is an open question. */
@@ -14,7 +18,20 @@ export const columnRoles: { role: ColumnRole; label: string; required: boolean }
   { role: 'value', label: 'Value', required: true },
   { role: 'unit', label: 'Unit', required: false },
   { role: 'samplePoint', label: 'Sample point', required: false },
+  { role: 'takenFrom', label: 'Time gathering began, of composites', required: false },
+  { role: 'analyst', label: 'Analyst', required: false },
 ];
+
+export type FilePreview = SampleImportView['preview'];
+
+/** The first lines that a form speaks of: of a workbook those of its sheet, with tabs between the cells. */
+export function headUnder(preview: FilePreview, { sheet }: Pick<MappingForm, 'sheet'>): string {
+  return preview.sheets.find(({ name }) => name === sheet)?.head ?? preview.head;
+}
+
+/** What parts the columns of those lines. */
+const delimiterUnder = ({ sheet, delimiter }: Pick<MappingForm, 'sheet' | 'delimiter'>) =>
+  sheet === null ? delimiter : ('\t' as const);
 
 export interface FileColumn {
   name: string;
@@ -25,9 +42,10 @@ export interface FileColumn {
 /** The columns as the first lines show them under a delimiter and a header line; none where no row begins there. */
 export function columnsOf(
   head: string,
-  { delimiter, headerLine }: Pick<MappingForm, 'delimiter' | 'headerLine'>,
+  form: Pick<MappingForm, 'sheet' | 'delimiter' | 'headerLine'>,
 ): FileColumn[] {
-  const table = readTable(head, delimiter);
+  const { headerLine } = form;
+  const table = readTable(head, delimiterUnder(form));
   if (!table.ok) return [];
   const at = table.rows.findIndex(({ line }) => line === headerLine);
   const below = table.rows.slice(at + 1, at + 3);
@@ -37,14 +55,14 @@ export function columnsOf(
   }));
 }
 
-/** The form under another delimiter or header line: columns that are no longer there are open again. */
+/** The form under another sheet, delimiter or header line: columns that are no longer there are open again. */
 export function withReading(
   form: MappingForm,
-  reading: Partial<Pick<MappingForm, 'delimiter' | 'headerLine'>>,
-  head: string,
+  reading: Partial<Pick<MappingForm, 'sheet' | 'delimiter' | 'headerLine'>>,
+  preview: FilePreview,
 ): MappingForm {
   const next = { ...form, ...reading };
-  const width = columnsOf(head, next).length;
+  const width = columnsOf(headUnder(preview, next), next).length;
   const kept = Object.entries(form.columns).map(([role, column]) => [
     role,
     column !== null && column < width ? column : null,
@@ -56,7 +74,7 @@ export function withReading(
 export function readMapping(
   form: MappingForm,
 ): { mapping: SampleMapping; errors?: undefined } | { errors: MappingErrors; mapping?: undefined } {
-  const { decimal, dateOrder, unit, columns, samplePointId } = form;
+  const { decimal, dateOrder, zone, unit, columns, samplePointId } = form;
   const { takenAt, value } = columns;
   const errors: MappingErrors = {};
   if (takenAt === null) errors['columns.takenAt'] = 'Choose the column that says when each sample was taken.';
@@ -69,13 +87,26 @@ export function readMapping(
   if (dateOrder === null) errors.dateOrder = 'Day and month may stand either way round in this file. Choose.';
   if (decimal === null)
     errors.decimal = 'Commas may be decimal signs or part thousands in this file. Choose.';
-  if (Object.keys(errors).length > 0 || decimal === null || dateOrder === null) return { errors };
+  if (zone === null)
+    errors.zone = 'Times of this file do not exist on the clock of the site. Choose whose clock it is.';
+  if (Object.keys(errors).length > 0 || decimal === null || dateOrder === null || zone === null)
+    return { errors };
   if (takenAt === null || value === null) return { errors };
   return {
-    mapping: { ...form, decimal, dateOrder, unit: unit ?? '', columns: { ...columns, takenAt, value } },
+    mapping: { ...form, decimal, dateOrder, zone, unit: unit ?? '', columns: { ...columns, takenAt, value } },
   };
 }
 
 /** The server's field paths as those of the form. */
 export const ownPaths = (errors: Record<string, string>): MappingErrors =>
   Object.fromEntries(Object.entries(errors).map(([path, text]) => [path.replace(/^mapping\./, ''), text]));
+
+/** Words parted by commas as a list, each once. */
+export const readWords = (text: string): string[] => [
+  ...new Set(
+    text
+      .split(',')
+      .map((word) => word.trim())
+      .filter((word) => word !== ''),
+  ),
+];

@@ -1,5 +1,7 @@
 import type { LabMethod } from '../../../shared/contracts/samples.ts';
-import { numberText, readNumber } from '../register/number-text.ts';
+import { sayNarrow } from '../../../shared/rules/precision-sentences.ts';
+import { readTypedNumber } from '../../../shared/rules/typed-result.ts';
+import { numberText } from '../register/number-text.ts';
 
 /** A laboratory method as typed. */
 export interface MethodFields {
@@ -29,17 +31,26 @@ export const methodFieldsOf = (row: LabMethod): MethodFields => ({
   archived: row.archivedAt !== null,
 });
 
+/** A limit as typed, with a decimal comma or point; blank is null. */
+const read = (text: string): { ok: true; value: number | null } | { ok: false; message: string } =>
+  text.trim() === '' ? { ok: true, value: null } : readTypedNumber(text);
+
 /** What can't be used as typed: field → sentence. */
 export function checkMethod({ repeatability, reproducibility }: MethodFields): Record<string, string> {
-  const typed = { repeatability: readNumber(repeatability), reproducibility: readNumber(reproducibility) };
-  return Object.fromEntries(
-    Object.entries(typed).flatMap(([field, read]) => ('wrong' in read ? [[field, read.wrong] as const] : [])),
-  );
+  const r = read(repeatability);
+  const R = read(reproducibility);
+  const errors: Record<string, string> = {};
+  if (!r.ok) errors.repeatability = r.message;
+  if (!R.ok) errors.reproducibility = R.message;
+  if (r.ok && R.ok && r.value !== null && R.value !== null && r.value > R.value) {
+    errors.reproducibility = sayNarrow(r.value, R.value);
+  }
+  return errors;
 }
 
 const numberOf = (text: string): number | null => {
-  const read = readNumber(text);
-  return 'wrong' in read ? null : read.value;
+  const found = read(text);
+  return found.ok ? found.value : null;
 };
 
 /** The method as it is sent; for fields that {@link checkMethod} finds nothing wrong with. */

@@ -3,11 +3,11 @@ import type {
   SampleImport,
   SampleImportView,
   SampleOutcome,
-  SampleReasonCode,
   SampleRow,
 } from '../../../shared/contracts/sample-import.ts';
 import type { Sample } from '../../../shared/contracts/samples.ts';
 import { formatAge, formatCount, formatDate, formatInstant, plural } from '../../../shared/rules/format.ts';
+import { sayFlags as sayFlagWords } from '../../../shared/rules/laboratory-sentences.ts';
 import { outcomeWords, sayCounts } from '../../../shared/rules/sample-sentences.ts';
 import { columnRoles, type FileColumn, type MappingForm } from './mapping-form.ts';
 
@@ -29,23 +29,34 @@ export function saySamples(
 export const sayTaken = ({ takenAt, takenOn }: Pick<Sample, 'takenAt' | 'takenOn'>, zone: string): string =>
   takenAt ? formatInstant(takenAt, zone) : takenOn ? formatDate(takenOn, zone) : '';
 
-/** A result as the laboratory wrote it, with its limit sign and unit: "< 1200 °C". */
-export function sayValue({
-  asWritten,
-  qualifier,
-  unit,
-}: Pick<Sample, 'asWritten' | 'qualifier' | 'unit'>): string {
-  const bare = asWritten.replace(/^\s*[<>≤≥]\s*/, '').replace(/^-/, '−');
+type Result = Pick<Sample, 'value' | 'asWritten' | 'qualifier' | 'unit' | 'statedUnit' | 'replicates'>;
+
+/**
+ * A result as the laboratory wrote it, with its limit sign and unit: "< 1200 °C". One that was converted, or that is the
+ * mean of repeats, is in no cell as it stands; it shows six digits at most.
+ */
+export function sayValue({ value, asWritten, qualifier, unit, statedUnit, replicates }: Result): string {
+  const computed = statedUnit !== null || (replicates !== null && replicates.length > 1);
+  const written = computed ? String(Number(value.toPrecision(6))) : asWritten;
+  const bare = written.replace(/^\s*[<>≤≥]\s*/, '').replace(/^-/, '−');
   return `${qualifier ? `${qualifier}\u00a0` : ''}${bare}${unit ? `\u00a0${unit}` : ''}`;
 }
 
-const flagWords: Partial<Record<SampleReasonCode, string>> = {
-  censored: 'outside the method’s range, not used to judge',
-  'date-only': 'no time of day, never compared',
-};
-/** What is to be known of a sample, in words; empty for most. */
-export const sayFlags = (flags: readonly string[]): string =>
-  flags.map((flag) => flagWords[flag as SampleReasonCode] ?? flag).join('; ');
+/** What the laboratory wrote before it was converted: "written as 2,700 °F"; empty where nothing was. */
+export function sayStated({ statedUnit, statedValue }: Pick<Sample, 'statedUnit' | 'statedValue'>): string {
+  if (statedUnit === null || statedValue === null) return '';
+  return `written as ${String(statedValue).replace('-', '−')}${statedUnit ? `\u00a0${statedUnit}` : ''}`;
+}
+
+/** What is to be known of a sample, in words: that it is held or was changed, and its flags; empty for most. */
+export const sayFlags = ({
+  flags,
+  heldSince,
+  changed,
+}: Pick<Sample, 'flags' | 'heldSince' | 'changed'>): string =>
+  [heldSince ? 'held' : '', sayFlagWords(flags), changed ? 'corrected' : '']
+    .filter((part) => part !== '')
+    .join('; ');
 
 /** What became of a file: "404 added, 5 refused", or what is still to do. */
 export function sayFile({ state, counts }: Pick<SampleImport, 'state' | 'counts'>): string {
@@ -61,6 +72,24 @@ export function sayImport({ import: row, outcome }: SampleImportView): string {
     return sayCounts(row.counts, row.state === 'undone' ? 'undone' : 'was');
   return row.counts && outcome ? sayCounts(row.counts, 'will') : `${row.fileName} leaves something open.`;
 }
+
+/** What came of adding a file: "2 soft sensors changed health." */
+export function sayReceipt({
+  softSensors,
+  waiting,
+  changedHealth,
+}: NonNullable<SampleImportView['receipt']>): string {
+  if (softSensors === 0) return 'No soft sensor in service is judged by these samples.';
+  if (waiting > 0) return `${plural(waiting, 'soft sensor is', 'soft sensors are')} still being judged.`;
+  if (changedHealth.length === 0) return `No health changed at ${plural(softSensors, 'soft sensor')}.`;
+  return `${plural(changedHealth.length, 'soft sensor')} changed health.`;
+}
+
+/** How a file was known. */
+export const sayRecognised = ({ name, taken }: NonNullable<SampleImportView['recognised']>): string =>
+  taken
+    ? `Known by its columns as “${name}”, and read as the last of these files was.`
+    : `Read otherwise than the last file with these columns (“${name}”). Adding it makes this the way they are read.`;
 
 /** "3 of the added carry a flag."; empty where none does. */
 export function sayFlagged({ flagged }: SampleCounts): string {
