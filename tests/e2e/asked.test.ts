@@ -103,8 +103,11 @@ describe('somebody else on the same phone', () => {
     await page.getByLabel('Sample point').click();
     await page.getByRole('option', { name: 'Tarnby' }).click();
     await page.getByLabel('Value', { exact: true }).fill('303');
+    const tried = page.waitForEvent('requestfailed', (request) => request.method() === 'POST');
     await page.getByRole('button', { name: 'Enter this value' }).click();
     await page.getByText('1 entry kept on this device').waitFor();
+    // A sending that is still under way would reach the server in their own name once the network is back.
+    await tried;
     // The network comes back only once nobody is signed in any more.
     await page.goto('about:blank');
     await page.context().setOffline(false);
