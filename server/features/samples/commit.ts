@@ -9,7 +9,7 @@ import type { Tx } from '../../db/client.ts';
 import { type Permitted, lockRow } from '../../http/rows.ts';
 import { samplesChanged } from '../judging/changed.ts';
 import { whatRestsOn } from '../laboratory/rests.ts';
-import { viewImport } from './import-view.ts';
+import { viewImport, viewOf } from './import-view.ts';
 import { type By, note, refuseMoved, refuseStale } from './imports.ts';
 import { type ImportRow, setImport } from './imports-repo.ts';
 import { remember } from './profiles.ts';
@@ -49,7 +49,8 @@ export async function commitImport(
       version: locked.version + 1,
     });
     await note(context, tx, by, 'commit', after, { mapping: locked.mapping, counts });
-    return viewImport(tx, after, now);
+    const rows = dry.rows.map((one) => (isToAdd(one) ? { ...one, stored: true } : one));
+    return viewOf(tx, after, file, { ...dry, rows });
   });
 }
 
